@@ -24,7 +24,7 @@ Colour = tuple[float, float, float]
 
 @dataclass(frozen=True)
 class Body:
-    """A solid (or compound of solids) with its name and colour (red, green, blue, each 0 to 1), in the design's frame."""
+    """A solid (or compound of solids) in the design's frame, its name and colour (red, green, blue, each 0 to 1)."""
 
     name: str
     shape: Any
@@ -83,7 +83,7 @@ class Lettering:
 
 @dataclass(frozen=True)
 class DrawingPiece:
-    """A flat drawing at true scale in millimetres for one DXF file. The kerf is already taken (`offsets` says how much)."""
+    """A flat drawing at true scale [mm] for one DXF file. The kerf is already taken; `offsets` says how much."""
 
     stem: str
     process: Process

@@ -45,7 +45,7 @@ def bend_radius_mm(driven: Driven) -> float:
 
 
 def square_loop_side_mm(perimeter_mm: float, bend_mm: float) -> float:
-    """Distance between opposite sides' axes [mm] of a square loop of centreline `perimeter_mm` with bends of `bend_mm`."""
+    """Distance between opposite sides' axes [mm] of a square loop of this centreline perimeter and bend radius."""
     return (perimeter_mm + (8.0 - 2.0 * math.pi) * bend_mm) / 4.0
 
 
@@ -67,8 +67,8 @@ def straight_half_mm(driven: Driven) -> float:
 def trace(driven: Driven) -> tuple[tuple[Run, ...], ...]:
     """The conductors of a driven element, each as its runs in order from one end to the other.
 
-    A straight element is two conductors (its halves, -y first, each from the gap to its tip); a folded element or a loop
-    is one, from the gap's +y end round to its -y end.
+    A straight element is two conductors (its halves, -y first, each from the gap to its tip); a folded element or a
+    loop is one, from the gap's +y end round to its -y end.
     """
     if driven.form == "straight":
         assert driven.length_mm is not None

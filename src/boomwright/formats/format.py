@@ -1,4 +1,4 @@
-"""What every format offers: which pieces it takes, a writer, a reader, measures, and the rules any file of it must meet."""
+"""What every format offers: the pieces it takes, a writer, a reader, measures, and the rules any file of it must meet."""
 
 from __future__ import annotations
 
@@ -44,7 +44,7 @@ class Format:
         raise NotImplementedError
 
     def measure(self, reading: Any, probe: Probe, also: Sequence[Any]) -> float:
-        """One quantity. `also` holds the readings of `probe.also`. Raises MeasureError when the file shows no such thing."""
+        """One quantity; `also` holds the readings of `probe.also`. MeasureError when the file shows no such thing."""
         raise NotImplementedError
 
     def expect(self, entry: FileEntry, shop: Shop) -> tuple[Expectation, ...]:

@@ -1,9 +1,10 @@
-"""Where every conductor sits on the boom: grooves, pockets, holes, and the bond lines the fixtures must keep clear of."""
+"""Where every conductor sits on the boom: grooves, pockets, holes, and the bond lines that fixtures keep clear of."""
 
 from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from itertools import pairwise
 
 from boomwright.design.model import Boom, Design, Seat
 from boomwright.errors import Fault
@@ -53,7 +54,7 @@ class Hole:
 
 @dataclass(frozen=True)
 class BondLine:
-    """The box that holds the adhesive film of one crossing [mm]; z is the design's (up), `half_y` the boom's half width."""
+    """The box that holds the adhesive film of one crossing [mm]; z is the design's, `half_y` the boom's half width."""
 
     tag: str
     at_mm: float
@@ -109,15 +110,11 @@ def plan_seat(design: Design, boom: Boom, seat: Seat) -> tuple[SeatPlan, list[Si
     ]
     if seat.kind == "groove":
         top = max((c.outer_mm for c in crossings), default=0.0) / 2.0
-        sizes.append(
-            Size("boom.top_mm", top, "mm", "datum + half the thickest conductor: flush with the boom's top line")
-        )
+        sizes.append(Size("boom.top_mm", top, "mm", "datum + half the thickest conductor, which lies flush"))
     else:
         top = half
-        sizes.append(
-            Size("boom.top_mm", top, "mm", "half the boom's width: the datum plane is the boom's middle plane")
-        )
-    grooves = tuple(_groove(c, seat, top) for c in crossings) if seat.kind == "groove" else ()
+        sizes.append(Size("boom.top_mm", top, "mm", "half the boom's width: datum plane = the boom's middle"))
+    grooves = _grooves(crossings, seat, top) if seat.kind == "groove" else ()
     holes = tuple(_hole(c, seat) for c in crossings if c.gap_mm is None) if seat.kind == "through" else ()
     bonds = tuple(_groove_bond(g, half, top) for g in grooves) + tuple(_hole_bond(h, half) for h in holes)
     for groove, crossing in zip(grooves, crossings, strict=False):
@@ -143,13 +140,20 @@ def _crossings(design: Design) -> list[_Crossing]:
     return sorted(found, key=lambda c: c.at_mm)
 
 
-def _groove(crossing: _Crossing, seat: Seat, top_mm: float) -> Groove:
-    radius = crossing.outer_mm / 2.0 + seat.glue_gap_mm
-    pocket = None
-    if crossing.gap_mm is not None:
-        room = max(LEAST_JOINT_ROOM_MM, JOINT_ROOM_PER_DIAMETER * crossing.outer_mm)
-        pocket = Pocket(radius + room, crossing.gap_mm / 2.0 + 2.0 * room)
-    return Groove(crossing.tag, crossing.at_mm, radius, top_mm + radius, pocket)
+def _grooves(crossings: list[_Crossing], seat: Seat, top_mm: float) -> tuple[Groove, ...]:
+    grooves = []
+    for crossing in crossings:
+        radius = crossing.outer_mm / 2.0 + seat.glue_gap_mm
+        pocket = None
+        if crossing.gap_mm is not None:
+            room = max(LEAST_JOINT_ROOM_MM, JOINT_ROOM_PER_DIAMETER * crossing.outer_mm)
+            others = [c for c in crossings if c is not crossing]
+            free = [abs(c.at_mm - crossing.at_mm) - c.outer_mm / 2.0 - seat.glue_gap_mm - radius for c in others]
+            # The pocket weakens the web only in the middle: half of the bare web stays.
+            half_x = radius + max(0.0, min([room, *(f / 2.0 for f in free)]))
+            pocket = Pocket(half_x, crossing.gap_mm / 2.0 + 2.0 * room)
+        grooves.append(Groove(crossing.tag, crossing.at_mm, radius, top_mm + radius, pocket))
+    return tuple(grooves)
 
 
 def _hole(crossing: _Crossing, seat: Seat) -> Hole:
@@ -182,7 +186,7 @@ def _faults(
         faults.append(
             Fault(
                 "boom.width_mm",
-                f"the groove of {deepest.tag} is {deepest.depth_mm:g} deep, more than half of the {boom.width_mm:g} mm boom",
+                f"the groove of {deepest.tag} is {deepest.depth_mm:g} deep, over half of the {boom.width_mm:g} mm boom",
                 f"a boom of at least {_round_up(2.0 * deepest.depth_mm):g} mm, or thinner rods",
             )
         )
@@ -191,25 +195,25 @@ def _faults(
         faults.append(
             Fault(
                 "boom.width_mm",
-                f"the hole of {widest.tag} is {widest.diameter_mm:g}, more than half of the {boom.width_mm:g} mm boom",
+                f"the hole of {widest.tag} is {widest.diameter_mm:g}, over half of the {boom.width_mm:g} mm boom",
                 f"a boom of at least {_round_up(2.0 * widest.diameter_mm):g} mm, or thinner rods",
             )
         )
-    cuts = [(g.tag, g.at_mm, g.half_x_mm, g.radius_mm) for g in grooves]
-    cuts += [(h.tag, h.at_mm, h.diameter_mm / 2.0, h.diameter_mm / 2.0) for h in holes]
+    cuts = [(g.tag, g.at_mm, g.radius_mm) for g in grooves]
+    cuts += [(h.tag, h.at_mm, h.diameter_mm / 2.0) for h in holes]
     paths = {c.tag: c.path for c in crossings}
-    for (tag_a, at_a, half_a, r_a), (tag_b, at_b, half_b, r_b) in zip(cuts, cuts[1:], strict=False):
-        web, least = at_b - at_a - half_a - half_b, WEB_PER_RADIUS * max(r_a, r_b)
+    for (tag_a, at_a, r_a), (tag_b, at_b, r_b) in pairwise(cuts):
+        web, least = at_b - at_a - r_a - r_b, WEB_PER_RADIUS * max(r_a, r_b)
         if web < least - 1e-9:
             key = f"{paths[tag_b]}.at_mm" if tag_b != "DE-front" or tag_a != "DE" else "driven.spacing_mm"
             faults.append(
                 Fault(
                     key,
-                    f"leaves a web of {web:.3g} mm between the seats of {tag_a} and {tag_b}, at least {least:.3g} is needed",
+                    f"the web between the seats of {tag_a} and {tag_b} is {web:.3g} mm, at least {least:.3g} is needed",
                     f"set them at least {_round_up(at_b - at_a + least - web, 0.01):g} mm apart, or use thinner rods",
                 )
             )
-    for tag, at, half, _ in cuts:
+    for tag, at, half in cuts:
         if at - half < span[0] or at + half > span[1]:
             key = "boom.tail_mm" if at - half < span[0] else "boom.nose_mm"
             faults.append(Fault(key, f"the seat of {tag} runs over the boom's end", f"at least {half + 1.0:.3g} mm"))
