@@ -58,6 +58,10 @@ class AccessError(BoomwrightError, OSError):
     """Something could not be read or written: disk, permission, a missing system library (exit status 4)."""
 
 
+class ShapeError(BoomwrightError, RuntimeError):
+    """The CAD kernel gave no sound solid for a sound plan: names the part; a fault of the program, worth reporting."""
+
+
 class MeasureError(BoomwrightError, ValueError):
     """A written file does not hold what a measurement looks for; becomes a finding, never a traceback."""
 
