@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from collections.abc import Iterable
+from dataclasses import dataclass, field, replace
 from typing import Literal
 
 Role = Literal["reflector", "director"]
@@ -72,6 +73,15 @@ class Rod:
     def outer_diameter_mm(self) -> float:
         """Diameter over the coat [mm]: what a notch, a groove or a hole meets."""
         return self.diameter_mm + 2.0 * self.coat_mm
+
+
+def arranged(rods: Iterable[Rod]) -> tuple[Rod, ...]:
+    """Rods sorted by position, tagged R and D1, D2, ... counted forward."""
+    tagged: list[Rod] = []
+    for rod in sorted(rods, key=lambda rod: rod.at_mm):
+        directors = sum(1 for earlier in tagged if earlier.role == "director")
+        tagged.append(replace(rod, tag="R" if rod.role == "reflector" else f"D{directors + 1}"))
+    return tuple(tagged)
 
 
 @dataclass(frozen=True)
