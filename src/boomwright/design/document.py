@@ -58,12 +58,19 @@ def parse(text: str, file: str) -> dict[str, Any]:
         raise InputFault([_syntax_fault(str(error), text, file)]) from None
     except RecursionError:
         raise InputFault([Fault("", "is nested too deeply", "keep tables and lists flat", file)]) from None
-    except ValueError as error:
-        raise InputFault([Fault("", f"is not TOML: {error}", "correct the number or the date", file)]) from None
+    except ValueError:
+        raise InputFault([_endless_number_fault(text, file)]) from None
 
 
 def _too_large(file: str) -> Fault:
     return Fault("", "larger than 1 MiB", "name the right file; a real one has a few kilobytes", file)
+
+
+def _endless_number_fault(text: str, file: str) -> Fault:
+    """The one thing the parser passes on undecided: a whole number of more digits than Python reads."""
+    longest = max(re.finditer(r"[0-9_]+", text), key=lambda found: len(found[0]))
+    line = text.count("\n", 0, longest.start()) + 1
+    return Fault(f"line {line}", f"a number of {len(longest[0])} digits", "give a number of a few digits", file)
 
 
 def _refuse_deep_keys(text: str, file: str) -> None:

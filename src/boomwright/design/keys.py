@@ -239,7 +239,8 @@ def _number_fault(key: Key, given: object, path: str) -> Fault | None:
     if no_such or given <= 0 < key.low or given != key.low == key.high:
         return Fault(path, f"{shown(given)} is not {key.noun}", key.fix)
     if given < key.low:
-        return Fault(path, f"{shown(given)} is less than {key.low:g}", key.fix)
+        fix = key.fix.replace("above 0", f"at least {key.low:g}")
+        return Fault(path, f"{shown(given)} is less than {key.low:g}", fix)
     if given > key.high:
         fix = key.fix.replace("above 0", f"at most {key.high:g}").replace("0 or more", f"at most {key.high:g}")
         return Fault(path, f"{shown(given)} is more than {key.high:g}", fix)

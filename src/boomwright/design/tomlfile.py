@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import Any
 
 from boomwright.data.tables import boom_material_names, cable_names, conductor_names, material_names
-from boomwright.design.document import parse, read_text
+from boomwright.design.document import escaped, parse, read_text
 from boomwright.design.keys import LEAST_MM, MOST_MM, REQUIRED, Default, Key, Only, Table, read_table
 from boomwright.design.model import (
     Adhesive,
@@ -202,7 +202,7 @@ DESIGN = Table(
 
 def load_design(path: Path) -> Design:
     """The design in a file. Raises InputFault (no such file), DesignFault with every fault, AccessError."""
-    return read_design(read_text(path), str(path))
+    return read_design(read_text(path), escaped(str(path)))
 
 
 def read_design(text: str, file: str = "design.toml") -> Design:

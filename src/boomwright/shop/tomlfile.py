@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import Any
 
 from boomwright.data.tables import conductor_names, material_names, refused_sheet
-from boomwright.design.document import parse, read_text
+from boomwright.design.document import escaped, parse, read_text
 from boomwright.design.keys import LEAST_MM, MOST_MM, Key, Table, read_table
 from boomwright.design.writer import table_text
 from boomwright.errors import Fault, InputFault, ShopFault
@@ -161,7 +161,7 @@ def load_shop(path: Path | None = None) -> Shop:
 
     Raises InputFault (no such file), ShopFault with every fault, AccessError.
     """
-    return Shop() if path is None else read_shop(read_text(path), str(path))
+    return Shop() if path is None else read_shop(read_text(path), escaped(str(path)))
 
 
 def read_shop(text: str, file: str = "shop.toml") -> Shop:
