@@ -1,140 +1,152 @@
 """The matrix of the whole antenna at one frequency: own blocks, couplings, loss and coats, all over the same basis.
 
 Z[m, n] = j eta k / (4 pi) (current integrals - charge integrals / k^2), mixed-potential Galerkin form [Harrington1968].
-Unknowns are the total currents at the nodes of the half y >= 0; the mirror half carries the same.
+Unknowns are the total currents at the nodes of the half y >= 0; the mirror half carries the same. Own integrals that do
+not depend on frequency are worked out once and kept.
 """
 
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 
 import numpy as np
 
-from boomwright.rf.arrays import VACUUM_PERMITTIVITY_F_M, WAVE_IMPEDANCE_OHM, Complexes, Floats, wavenumber_rad_m
-from boomwright.rf.conductors import Coat, Conductor, Rod
-from boomwright.rf.coupling import Samples, coupling, sample
+from boomwright.rf.arrays import WAVE_IMPEDANCE_OHM, Complexes, wavenumber_rad_m
+from boomwright.rf.azimuth import surface_coupling
+from boomwright.rf.basis import Mode, Piece, offsets
+from boomwright.rf.coat import coat_elastance_m_f
+from boomwright.rf.conductors import Rod
+from boomwright.rf.coupling import coupling
 from boomwright.rf.loss import round_impedance_ohm_m, surface_impedance_ohm
-from boomwright.rf.mesh import Mesh, build, plan_nodes
 from boomwright.rf.own import OwnAction, block
 from boomwright.rf.quadrature import gauss_unit
 from boomwright.rf.ring import RingAction
 
-ELEMENTS_PER_HALF = 20.0
+
+class Impedance:
+    """The matrix of an antenna's pieces, ready for any frequency.
+
+    pieces  the meshed conductors
+    mode    what varies round the circumference
+    """
+
+    def __init__(self, pieces: tuple[Piece, ...], mode: Mode) -> None:
+        self.pieces, self.mode = pieces, mode
+        self.actions = tuple(own_action(piece, mode) for piece in pieces)
+
+    def matrix(self, frequency_hz: float) -> Complexes:
+        """The whole matrix [ohm], symmetric, (U, U), at a frequency [Hz]."""
+        first_row = offsets(self.pieces)
+        total = np.empty((first_row[-1], first_row[-1]), dtype=np.complex128)
+        for i, piece in enumerate(self.pieces):
+            rows = slice(first_row[i], first_row[i + 1])
+            total[rows, rows] = own_block(piece, self.actions[i], frequency_hz, self.mode)
+            for j in range(i + 1, len(self.pieces)):
+                columns = slice(first_row[j], first_row[j + 1])
+                part = coupling_block(piece, self.pieces[j], frequency_hz, self.mode)
+                total[rows, columns] = part
+                total[columns, rows] = part.T
+        return total
 
 
-@dataclass(frozen=True)
-class Meshed:
-    """A conductor with its mesh, its node fractions and its samples."""
-
-    conductor: Conductor
-    parts: tuple[Floats, ...]
-    mesh: Mesh
-    samples: Samples
-
-    @property
-    def unknowns(self) -> int:
-        """Number of unknowns U."""
-        return int(self.samples.charge.shape[0])
+def factor_ohm_m(frequency_hz: float) -> complex:
+    """j eta k / (4 pi), twice, since the half that is tested stands for the whole [ohm/m]."""
+    return 2.0 * 1j * WAVE_IMPEDANCE_OHM * wavenumber_rad_m(frequency_hz) / (4.0 * math.pi)
 
 
-def meshed(conductor: Conductor, parts: tuple[Floats, ...]) -> Meshed:
-    """A conductor meshed with given node fractions."""
-    mesh = build(conductor, parts)
-    return Meshed(conductor, parts, mesh, sample(mesh))
-
-
-def planned(conductor: Conductor, refinement: int = 0) -> Meshed:
-    """A conductor with the mesh that suits it; each refinement halves all elements."""
-    if isinstance(conductor, Rod):
-        largest_m = conductor.length_m / 2.0 / ELEMENTS_PER_HALF
-    else:
-        largest_m = conductor.half_length_m / (2.0 * ELEMENTS_PER_HALF)
-    return meshed(conductor, plan_nodes(conductor, largest_m, refinement))
-
-
-def factor(k: float) -> complex:
-    """j eta k / (4 pi), twice: the half tested stands for the whole [ohm/m]."""
-    return 2.0 * 1j * WAVE_IMPEDANCE_OHM * k / (4.0 * math.pi)
-
-
-def own_action(piece: Meshed) -> OwnAction | RingAction:
+def own_action(piece: Piece, mode: Mode) -> OwnAction | RingAction:
     """The integrals of one conductor with itself, ready for any frequency."""
-    return OwnAction(piece.mesh, azimuthal=False) if isinstance(piece.conductor, Rod) else RingAction(piece.mesh)
+    if isinstance(piece.conductor, Rod):
+        return OwnAction(piece.mesh, azimuthal=mode.families > 0)
+    return RingAction(piece.mesh, piece.samples, piece.surface, mode.families)
 
 
-def own_block(piece: Meshed, action: OwnAction | RingAction, frequency_hz: float) -> Complexes:
+def own_block(piece: Piece, action: OwnAction | RingAction, frequency_hz: float, mode: Mode) -> Complexes:
     """Block of one conductor with itself [ohm], (U, U), loss and coat included."""
     k = wavenumber_rad_m(frequency_hz)
     if isinstance(action, RingAction):
-        bare = action.block(k)
+        total = action.block(k)
     else:
-        bare = block(piece.mesh, action.static.plus(action.dynamic(k)), k)
-    result: Complexes = factor(k) * bare + loss_block(piece, frequency_hz) + coat_block(piece, frequency_hz)
-    return result
+        total = block(piece.mesh, action.static.plus(action.dynamic(k)), k, mode.families)
+    total *= factor_ohm_m(frequency_hz)
+    _add_loss(total, piece, frequency_hz)
+    _add_coat(total, piece, frequency_hz)
+    return total
 
 
-def coupling_block(first: Meshed, second: Meshed, frequency_hz: float) -> Complexes:
+def coupling_block(first: Piece, second: Piece, frequency_hz: float, mode: Mode) -> Complexes:
     """Block between two conductors [ohm], (U1, U2)."""
     k = wavenumber_rad_m(frequency_hz)
-    result: Complexes = factor(k) * coupling(first.samples, second.samples, k)
-    return result
-
-
-def loss_block(piece: Meshed, frequency_hz: float) -> Complexes:
-    """What conductor loss and internal reactance add [ohm], (U, U)."""
-    mesh, sigma = piece.mesh, piece.conductor.conductivity_s_m
-    total = np.zeros((mesh.elements + 1, mesh.elements + 1), dtype=np.complex128)
-    if not math.isinf(sigma):
-        per_length = {
-            a: round_impedance_ohm_m(a, sigma, frequency_hz) for a in {float(r) for r in mesh.radius_m[~mesh.cap, 0]}
-        }
-        flat = surface_impedance_ohm(sigma, frequency_hz)
-        places, weights = gauss_unit(6)
-        hats = np.array([1.0 - places, places])
-        for index in range(mesh.elements):
-            if mesh.cap[index]:
-                radius = mesh.radius_m[index, 0] + (mesh.radius_m[index, 1] - mesh.radius_m[index, 0]) * places
-                impedance = flat / (2.0 * math.pi * radius)
-            else:
-                impedance = np.full(len(places), per_length[float(mesh.radius_m[index, 0])])
-            part = (hats * (weights * impedance * mesh.size_m[index])) @ hats.T
-            total[index : index + 2, index : index + 2] += 2.0 * part
-    return total[: piece.unknowns, : piece.unknowns]
-
-
-def coat_block(piece: Meshed, frequency_hz: float) -> Complexes:
-    """What a thin coat adds [ohm], (U, U): the field of the charge inside the sheath is weaker [Richmond1976]."""
-    mesh, coat = piece.mesh, piece.conductor.coat
-    total = np.zeros((mesh.elements + 1, mesh.elements + 1), dtype=np.complex128)
-    if coat is not None and coat.thickness_m > 0.0:
-        omega = 2.0 * math.pi * frequency_hz
-        for index in np.flatnonzero(~mesh.cap):
-            change = coat_elastance_m_f(coat, float(mesh.radius_m[index, 0])) / (1j * omega * mesh.size_m[index])
-            total[index : index + 2, index : index + 2] += 2.0 * change * np.array([[1.0, -1.0], [-1.0, 1.0]])
-    return total[: piece.unknowns, : piece.unknowns]
-
-
-def coat_elastance_m_f(coat: Coat, radius_m: float) -> complex:
-    """Change of elastance times length [m/F] that a coat makes on a round conductor [Richmond1976].
-
-    Returns (1 / eps - 1 / eps0) ln(b / a) / (2 pi): 0 without thickness and at permittivity 1.
-    """
-    permittivity = coat.permittivity * (1.0 - 1j * coat.loss_tangent)
-    thickness = math.log1p(coat.thickness_m / radius_m)
-    return (1.0 / permittivity - 1.0) * thickness / (2.0 * math.pi * VACUUM_PERMITTIVITY_F_M)
-
-
-def full_matrix(pieces: list[Meshed], frequency_hz: float) -> Complexes:
-    """The whole matrix [ohm], symmetric."""
-    offsets = np.concatenate([[0], np.cumsum([p.unknowns for p in pieces])])
-    total = np.zeros((offsets[-1], offsets[-1]), dtype=np.complex128)
-    for i, first in enumerate(pieces):
-        total[offsets[i] : offsets[i + 1], offsets[i] : offsets[i + 1]] = own_block(
-            first, own_action(first), frequency_hz
-        )
-        for j in range(i + 1, len(pieces)):
-            part = coupling_block(first, pieces[j], frequency_hz)
-            total[offsets[i] : offsets[i + 1], offsets[j] : offsets[j + 1]] = part
-            total[offsets[j] : offsets[j + 1], offsets[i] : offsets[i + 1]] = part.T
+    if first.surface is not None and second.surface is not None:
+        total = surface_coupling(first.surface, second.surface, k, mode.flat)
+    else:
+        total = coupling(first.samples, second.samples, k)
+    total *= factor_ohm_m(frequency_hz)
     return total
+
+
+def loss_matrix(piece: Piece, frequency_hz: float) -> Complexes:
+    """What conductor loss and internal reactance add [ohm], (U, U)."""
+    total = np.zeros((piece.unknowns, piece.unknowns), dtype=np.complex128)
+    _add_loss(total, piece, frequency_hz)
+    return total
+
+
+def _families(piece: Piece) -> range:
+    """First row of every m = 1 family of a piece."""
+    return range(piece.nodes, piece.unknowns, piece.nodes + piece.mesh.elements)
+
+
+def _add_nodal(total: Complexes, piece: Piece, row: int, parts: Complexes) -> None:
+    """Add element matrices (E, 2, 2) to the nodes that start at `row`."""
+    count = piece.mesh.elements
+    index = np.arange(count)
+    for i in (0, 1):
+        for j in (0, 1):
+            keep = (index + i < piece.nodes) & (index + j < piece.nodes)
+            total[row + index[keep] + i, row + index[keep] + j] += parts[keep, i, j]
+
+
+def _add_loss(total: Complexes, piece: Piece, frequency_hz: float) -> None:
+    """Add the surface impedance: exact round form along the conductor, flat form on ends and round it."""
+    mesh, sigma = piece.mesh, piece.conductor.conductivity_s_m
+    if math.isinf(sigma):
+        return
+    flat = surface_impedance_ohm(sigma, frequency_hz)
+    places, weights = gauss_unit(6)
+    hats = np.array([1.0 - places, places])
+    radius = mesh.radius_m[:, :1] + (mesh.radius_m[:, 1:] - mesh.radius_m[:, :1]) * places
+    along = np.array([round_impedance_ohm_m(float(a), sigma, frequency_hz) for a in mesh.radius_m[:, 0]])
+    per_length = np.where(mesh.cap[:, None], flat / (2.0 * math.pi * radius), along[:, None])
+    weighted = 2.0 * per_length * weights * mesh.size_m[:, None]
+    _add_nodal(total, piece, 0, np.einsum("eq,iq,jq->eij", weighted, hats, hats))
+    count = mesh.elements
+    for row in _families(piece):
+        weighted = 2.0 * flat / (4.0 * math.pi * radius) * weights * mesh.size_m[:, None]
+        _add_nodal(total, piece, row, np.einsum("eq,iq,jq->eij", weighted, hats, hats))
+        elements = row + piece.nodes + np.arange(count)
+        total[elements, elements] += 2.0 * flat * (radius @ weights) * mesh.size_m / (4.0 * math.pi)
+
+
+def _add_coat(total: Complexes, piece: Piece, frequency_hz: float) -> None:
+    """Add the sheath's elastance to the charge of every element along the conductor."""
+    mesh, coat = piece.mesh, piece.conductor.coat
+    if coat is None or coat.thickness_m <= 0.0:
+        return
+    omega = 2.0 * math.pi * frequency_hz
+    size = mesh.size_m
+    elastance = np.array([coat_elastance_m_f(coat, float(a)) for a in mesh.radius_m[:, 0]])
+    per_element = np.where(mesh.cap, 0.0, 2.0 * elastance / (1j * omega * size))
+    slopes = np.array([[1.0, -1.0], [-1.0, 1.0]])
+    _add_nodal(total, piece, 0, per_element[:, None, None] * slopes)
+    index = np.arange(mesh.elements)
+    for row in _families(piece):
+        half = per_element / 2.0
+        _add_nodal(total, piece, row, half[:, None, None] * slopes)
+        elements = row + piece.nodes + index
+        total[elements, elements] += half * size**2
+        for end, sign in ((0, -1.0), (1, 1.0)):
+            keep = index + end < piece.nodes
+            nodes = row + index[keep] + end
+            total[nodes, elements[keep]] += sign * (half * size)[keep]
+            total[elements[keep], nodes] += sign * (half * size)[keep]

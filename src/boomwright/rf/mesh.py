@@ -12,7 +12,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from boomwright.rf.arrays import Floats, Integers
-from boomwright.rf.conductors import Conductor, Ring, Rod
+from boomwright.rf.conductors import Conductor, Folded, Loop, Rod
+from boomwright.rf.outline import outline
 
 GROWTH = 0.6
 TIP_ELEMENT_RADII = 0.3
@@ -121,15 +122,16 @@ def plan_nodes(conductor: Conductor, largest_m: float, refinement: int = 0) -> t
         fine = np.arange(0.0, len(CAP_NODES) - 1.0 + step / 2.0, step)
         parts.append(np.interp(fine, np.arange(len(CAP_NODES)), coarse))
         return tuple(parts)
-    for index, stretch in enumerate(conductor.stretches):
+    stretches = outline(conductor).stretches
+    for index, stretch in enumerate(stretches):
         length_m = stretch.length_m - (gap_m if index == 0 else 0.0)
         size_m = largest_m
         if stretch.turn_rad != 0.0:
             size_m = min(largest_m, length_m / abs(stretch.turn_rad) * math.pi / ELEMENTS_PER_HALF_CIRCLE)
         ends_m = [largest_m, largest_m]
         for side, neighbour in enumerate((index - 1, index + 1)):
-            if 0 <= neighbour < len(conductor.stretches) and conductor.stretches[neighbour].turn_rad != 0.0:
-                bend = conductor.stretches[neighbour]
+            if 0 <= neighbour < len(stretches) and stretches[neighbour].turn_rad != 0.0:
+                bend = stretches[neighbour]
                 ends_m[side] = bend.length_m / abs(bend.turn_rad) * math.pi / ELEMENTS_PER_HALF_CIRCLE
         first_m = near_gap_m if index == 0 and gap_m > 0.0 else ends_m[0]
         parts.append(graded_nodes(length_m, size_m, first_m, ends_m[1], refinement) / length_m)
@@ -163,12 +165,13 @@ def _rod(rod: Rod, parts: tuple[Floats, ...]) -> Mesh:
     )
 
 
-def _ring(ring: Ring, parts: tuple[Floats, ...]) -> Mesh:
-    gap_m = ring.gap_m / 2.0
-    forward, aside = np.array([0.0, 1.0, 0.0]), np.array(ring.normal)
-    position, heading = np.array(ring.start), 0.0
+def _ring(conductor: Folded | Loop, parts: tuple[Floats, ...]) -> Mesh:
+    line = outline(conductor)
+    gap_m = conductor.gap_m / 2.0
+    forward, aside = np.array([0.0, 1.0, 0.0]), np.array(line.normal)
+    position, heading = np.array(line.start), 0.0
     start, tangent, normal, travel, bend, radius = [], [], [], [], [], []
-    pieces = [(s.length_m, s.turn_rad, s.radius_m) for s in ring.stretches]
+    pieces = [(s.length_m, s.turn_rad, s.radius_m) for s in line.stretches]
     if gap_m > 0.0:
         length_m, turn_rad, radius_m = pieces[0]
         opening = gap_m / length_m

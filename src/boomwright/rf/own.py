@@ -78,7 +78,7 @@ def pair_sets(mesh: Mesh, wanted: np.ndarray[tuple[int, ...], np.dtype[np.bool_]
     sets = []
     for mirrored in (False, True):
         take = wanted[int(mirrored)]
-        gap, size = _gaps(mesh, mirrored)
+        gap, size = element_gaps(mesh, mirrored)
         touching = np.abs(offset) <= 1
         if mirrored:
             touching = np.zeros((count, count), dtype=bool)
@@ -108,7 +108,7 @@ def _from_end() -> PairRule:
     return PairRule(rule.first, 1.0 - rule.second, rule.weight)
 
 
-def _gaps(mesh: Mesh, mirrored: bool) -> tuple[Floats, Floats]:
+def element_gaps(mesh: Mesh, mirrored: bool) -> tuple[Floats, Floats]:
     """Least distance between the ends of two elements' generating lines [m], and the larger one's size [m]; (E, E)."""
     ends = rings(mesh, np.arange(mesh.elements)[:, None], np.array([0.0, 1.0]))
     flip = np.array([1.0, -1.0 if mirrored else 1.0, 1.0])
@@ -215,11 +215,13 @@ class OwnAction:
         return Moments(**total)
 
 
-def block(mesh: Mesh, moments: Moments, wavenumber_rad_m: float) -> Complexes:
-    """Matrix of one conductor in its basis (`basis.size`), without the common factor of `impedance`.
+def block(mesh: Mesh, moments: Moments, wavenumber_rad_m: float, families: int = 0) -> Complexes:
+    """Matrix of one conductor in its basis, without the common factor of `impedance`.
 
-    Returns (U, U): current integrals minus charge integrals over k squared, m = 0 first, then m = 1 for the cosine
-    family (the sine family's is the same).
+    families  of m = 1: 0, 1 (cosine) or 2 (cosine, then sine: the same numbers again)
+
+    Returns (U, U): current integrals minus charge integrals over k squared; m = 0 nodes first, then for each family its
+    nodes and its elements.
     """
     keep = mesh.elements + (1 if mesh.closed else 0)
     inverse = 1.0 / wavenumber_rad_m**2
@@ -233,12 +235,16 @@ def block(mesh: Mesh, moments: Moments, wavenumber_rad_m: float) -> Complexes:
     mixed = np.zeros((count + 1, count), dtype=np.complex128)
     mixed[:count] += moments.mixed1[:, :, 0] + size * charge
     mixed[1:] += moments.mixed1[:, :, 1] - size * charge
-    total = np.zeros((2 * keep + count, 2 * keep + count), dtype=np.complex128)
+    unknowns = keep + families * (keep + count)
+    total = np.zeros((unknowns, unknowns), dtype=np.complex128)
     total[:keep, :keep] = plain
-    total[keep : 2 * keep, keep : 2 * keep] = along
-    total[2 * keep :, 2 * keep :] = around
-    total[keep : 2 * keep, 2 * keep :] = mixed[:keep]
-    total[2 * keep :, keep : 2 * keep] = mixed[:keep].T
+    for family in range(families):
+        nodes = slice(keep + family * (keep + count), 2 * keep + family * (keep + count))
+        elements = slice(nodes.stop, nodes.stop + count)
+        total[nodes, nodes] = along
+        total[elements, elements] = around
+        total[nodes, elements] = mixed[:keep]
+        total[elements, nodes] = mixed[:keep].T
     return total
 
 

@@ -1,0 +1,200 @@
+"""Action of thick or close conductors on one another: current that varies round the circumference, m = 0 and +-1.
+
+Each ring carries azimuth points; the plain kernel between points is first contracted with the few azimuth functions
+that occur, then with the basis functions along the conductor [Mautz1969]. Azimuth runs from a ring's in-plane normal.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from boomwright.rf.arrays import Complexes, Floats
+from boomwright.rf.coupling import MIRROR_SIGNS, hat_values, quadrature_points
+from boomwright.rf.kernels import spherical_wave
+from boomwright.rf.mesh import Mesh, rings
+
+ONE, COS, SIN, COS_COS, SIN_COS = range(5)
+"""The azimuth functions that occur: 1, cos, sin, cos squared, sin cos."""
+
+
+@dataclass(frozen=True)
+class Term:
+    """Part of a moment: rows of the basis from `row` on, one azimuth function, values (rows, Q)."""
+
+    row: int
+    function: int
+    values: Floats
+
+
+@dataclass(frozen=True)
+class Surface:
+    """A conductor's surface at its quadrature rings; Q rings, A azimuths, U unknowns.
+
+    centre, tangent, normal, aside  (Q, 3), the last three a right-handed set of unit vectors up to sign of `aside`
+    radius_m                        (Q,)
+    azimuths                        number of points round each ring
+    current, charge                 terms of the moments along x, y, z [m] and of the charge
+    unknowns                        U: m = 0 nodes, then for each family m = 1 nodes and elements
+    """
+
+    centre: Floats
+    normal: Floats
+    aside: Floats
+    radius_m: Floats
+    azimuths: int
+    current: tuple[tuple[Term, ...], ...]
+    charge: tuple[Term, ...]
+    unknowns: int
+
+    def points(self, half: bool = False) -> Floats:
+        """Points on the surface, (Q, A, 3), or those with azimuth below 180 degrees, (Q, A / 2, 3)."""
+        angle = azimuth_angles(self.azimuths)[: self.azimuths // 2 if half else None]
+        spoke = np.cos(angle)[:, None] * self.normal[:, None, :] + np.sin(angle)[:, None] * self.aside[:, None, :]
+        points: Floats = self.centre[:, None, :] + self.radius_m[:, None, None] * spoke
+        return points
+
+
+def azimuth_angles(count: int) -> Floats:
+    """Evenly spread azimuths [rad], symmetric about 0, (count,)."""
+    return (np.arange(count) + 0.5) * (2.0 * np.pi / count)
+
+
+def azimuth_functions(count: int, half: bool = False) -> Floats:
+    """The functions at the azimuths, divided by their number, (5, count); half: those below 180 degrees, doubled."""
+    angle = azimuth_angles(count)
+    c, s = np.cos(angle), np.sin(angle)
+    table: Floats = np.array([np.ones(count), c, s, c * c, s * c]) / count
+    return 2.0 * table[:, : count // 2] if half else table
+
+
+def surface(mesh: Mesh, azimuths: int, families: int) -> Surface:
+    """Surface samples of a conductor.
+
+    azimuths  points round each ring, even
+    families  1: cosine only (everything symmetric about the conductor's plane), 2: cosine and sine
+    """
+    element, place, weight = quadrature_points(mesh)
+    value, slope = hat_values(mesh, element, place)
+    at = rings(mesh, element, place)
+    aside = np.cross(at.tangent, at.normal) * -1.0
+    size = mesh.size_m
+    along = (mesh.travel_m / size)[element]
+    outward = ((mesh.radius_m[:, 1] - mesh.radius_m[:, 0]) / size)[element]
+    span = weight * size[element]
+    crowd = mesh.bend_rad_m[element] * at.radius_m
+    keep, column = len(value), np.arange(len(element))
+    inside = np.zeros((mesh.elements, len(element)))
+    inside[element, column] = span
+    hats, slopes = value * span, slope * weight
+    around = inside * at.radius_m
+    unknowns = keep + families * (keep + mesh.elements)
+    # (row, moments along tangent, normal, aside): {azimuth function: values}
+    local: list[tuple[int, tuple[dict[int, Floats], ...]]] = [
+        (0, ({ONE: hats * along, COS: -hats * along * crowd}, {COS: hats * outward}, {SIN: hats * outward}))
+    ]
+    charge = [Term(0, ONE, slopes)]
+    for family in range(families):
+        row = keep + family * (keep + mesh.elements)
+        pair = (COS, COS_COS) if family == 0 else (SIN, SIN_COS)
+        radial = (
+            ({COS_COS: hats * outward}, {SIN_COS: hats * outward})
+            if family == 0
+            else ({SIN_COS: hats * outward}, {ONE: hats * outward, COS_COS: -hats * outward})
+        )
+        local.append((row, ({pair[0]: hats * along, pair[1]: -hats * along * crowd}, *radial)))
+        turning = (
+            ({COS_COS: around, ONE: -around}, {SIN_COS: around})
+            if family == 0
+            else ({SIN_COS: around}, {COS_COS: -around})
+        )
+        local.append((row + keep, ({}, *turning)))
+        charge += [Term(row, pair[0], slopes), Term(row + keep, pair[0], inside)]
+    frame = (at.tangent, at.normal, aside)
+    current = tuple(_component(local, frame, axis) for axis in range(3))
+    return Surface(at.centre, at.normal, aside, at.radius_m, azimuths, current, tuple(charge), unknowns)
+
+
+def _component(
+    local: list[tuple[int, tuple[dict[int, Floats], ...]]], frame: tuple[Floats, ...], axis: int
+) -> tuple[Term, ...]:
+    terms = []
+    for row, moments in local:
+        gathered: dict[int, Floats] = {}
+        for vector, parts in zip(frame, moments, strict=True):
+            for function, values in parts.items():
+                part = values * vector[:, axis]
+                gathered[function] = gathered[function] + part if function in gathered else part
+        terms += [Term(row, function, values) for function, values in gathered.items() if values.any()]
+    return tuple(terms)
+
+
+PointMask = np.ndarray[tuple[int, ...], np.dtype[np.bool_]]
+
+
+def surface_coupling(
+    first: Surface,
+    second: Surface,
+    wavenumber_rad_m: float,
+    half: bool,
+    apart: tuple[PointMask, PointMask] | None = None,
+) -> Complexes:
+    """Matrix block (U1, U2) between two surfaces, the second one's mirror image in y = 0 included.
+
+    half   True: all is symmetric about z = 0, and the first one's azimuths below 180 degrees stand for the rest
+    apart  (Q1, Q2) masks of the pairs of rings to count, direct and image; default all
+
+    Returns the block without the common factor of `impedance`.
+    """
+    own = first.points(half)
+    weights = azimuth_functions(first.azimuths, half), azimuth_functions(second.azimuths)
+    tables = []
+    for number, flip in enumerate((1.0, -1.0)):
+        other = second.points() * np.array([1.0, flip, 1.0])
+        wave = _point_waves(own, other, wavenumber_rad_m)
+        if apart is not None:
+            wave *= apart[number][:, None, :, None]
+        tables.append(wave)
+    plus = _contracted(tables[0] + tables[1], weights)
+    minus = _contracted(tables[0] - tables[1], weights)
+    total = np.zeros((first.unknowns, second.unknowns), dtype=np.complex128)
+    for sign, left, right in zip(MIRROR_SIGNS, first.current, second.current, strict=True):
+        _add(total, left, plus if sign > 0.0 else minus, right, 1.0)
+    _add(total, first.charge, minus, second.charge, -1.0 / wavenumber_rad_m**2)
+    return total
+
+
+def _point_waves(first: Floats, second: Floats, wavenumber_rad_m: float) -> Complexes:
+    """exp(-jkR)/R between points (Q1, A1, 3) and (Q2, A2, 3), as (Q1, A1, Q2, A2)."""
+    squared = np.zeros((*first.shape[:2], *second.shape[:2]))
+    for axis in range(3):
+        across = first[:, :, None, None, axis] - second[None, None, :, :, axis]
+        across *= across
+        squared += across
+    np.maximum(squared, 1e-24, out=squared)
+    return spherical_wave(np.sqrt(squared, out=squared), wavenumber_rad_m)
+
+
+def _contracted(waves: Complexes, weights: tuple[Floats, Floats]) -> Complexes:
+    """Azimuths contracted with the azimuth functions: (5, 5, Q1, Q2)."""
+    rings_first, _, rings_second, points = waves.shape
+    inner = waves.reshape(-1, points) @ weights[1].T.astype(np.complex128)
+    inner = inner.reshape(rings_first, -1, rings_second * 5).transpose(1, 0, 2).reshape(weights[0].shape[1], -1)
+    outer = weights[0].astype(np.complex128) @ inner
+    result: Complexes = np.ascontiguousarray(outer.reshape(5, rings_first, rings_second, 5).transpose(0, 3, 1, 2))
+    return result
+
+
+def _add(
+    total: Complexes, left: tuple[Term, ...], kernels: Complexes, right: tuple[Term, ...], scale: float
+) -> None:
+    """Add scale * left @ kernel @ right.T, term by term, to the block."""
+    for one in left:
+        for two in right:
+            kernel = kernels[one.function, two.function]
+            part = np.empty((len(one.values), len(two.values)), dtype=np.complex128)
+            part.real = one.values @ kernel.real @ two.values.T
+            part.imag = one.values @ kernel.imag @ two.values.T
+            rows, columns = len(one.values), len(two.values)
+            total[one.row : one.row + rows, two.row : two.row + columns] += scale * part

@@ -1,0 +1,127 @@
+"""A conductor ready for the matrix: its mesh, its unknowns, and the samples through which it meets the others."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+
+from boomwright.rf.arrays import Floats, wavenumber_rad_m
+from boomwright.rf.azimuth import Surface, surface
+from boomwright.rf.clearance import least_spacing_radii, least_surface_gap_m
+from boomwright.rf.conductors import Conductor, Folded, Loop, Rod, Wires
+from boomwright.rf.coupling import Samples, sample
+from boomwright.rf.mesh import Mesh, build, plan_nodes
+from boomwright.rf.outline import outline
+
+ELEMENTS_PER_HALF = 20.0
+ELEMENTS_PER_WAVELENGTH = 60.0
+THICK_KA = 0.1
+CLOSE_RADII = 10.0
+FINEST_FACTOR = 3.0
+AZIMUTHS_LEAST, AZIMUTHS_MOST = 8, 20
+AZIMUTH_DECAY = 9.0
+
+
+@dataclass(frozen=True)
+class Options:
+    """How fine to solve.
+
+    refinement  0 = as planned; each step halves every element
+    azimuthal   whether current may vary round the circumference; None = where conductors are thick or close
+    """
+
+    refinement: int = 0
+    azimuthal: bool | None = None
+
+
+@dataclass(frozen=True)
+class Mode:
+    """What varies round the circumference: families of m = 1 (0 none, 1 cosine, 2 cosine and sine), azimuth points."""
+
+    families: int
+    azimuths: int
+
+    @property
+    def flat(self) -> bool:
+        """True where only what is symmetric about z = 0 is carried."""
+        return self.families == 1
+
+
+@dataclass(frozen=True)
+class Piece:
+    """A meshed conductor; `surface` is there when current varies round the circumference."""
+
+    conductor: Conductor
+    parts: tuple[Floats, ...]
+    mesh: Mesh
+    samples: Samples
+    surface: Surface | None
+
+    @property
+    def nodes(self) -> int:
+        """Number of m = 0 unknowns."""
+        return int(self.samples.charge.shape[0])
+
+    @property
+    def unknowns(self) -> int:
+        """Number of all unknowns U."""
+        return self.nodes if self.surface is None else self.surface.unknowns
+
+
+def choose_mode(wires: Wires, frequency_hz: float, options: Options) -> Mode:
+    """What may vary round the circumference, from the highest frequency [Hz] to be solved."""
+    k = wavenumber_rad_m(frequency_hz)
+    nearest = least_spacing_radii(wires)
+    wanted = options.azimuthal
+    if wanted is None:
+        wanted = nearest < CLOSE_RADII or any(k * conductor.radius_m > THICK_KA for conductor in wires.conductors)
+    if not wanted:
+        return Mode(0, 0)
+    decay = math.acosh(max(nearest / 2.0, 1.05)) if math.isfinite(nearest) else 10.0
+    azimuths = 2 * math.ceil(AZIMUTH_DECAY / decay / 2.0)
+    azimuths = min(max(azimuths, AZIMUTHS_LEAST), AZIMUTHS_MOST)
+    return Mode(1 if is_flat(wires) else 2, azimuths)
+
+
+def is_flat(wires: Wires) -> bool:
+    """True if the antenna is its own mirror image in z = 0."""
+    return all(
+        conductor.height_m == 0.0
+        and not isinstance(conductor, Loop)
+        and not (isinstance(conductor, Folded) and conductor.upright)
+        for conductor in wires.conductors
+    )
+
+
+def largest_element_m(conductor: Conductor, frequency_hz: float) -> float:
+    """Size of a conductor's elements away from ends, bends and feed [m]."""
+    wavelength_m = 2.0 * math.pi / wavenumber_rad_m(frequency_hz)
+    half_m = conductor.length_m / 2.0 if isinstance(conductor, Rod) else outline(conductor).length_m / 2.0
+    return min(half_m / ELEMENTS_PER_HALF, wavelength_m / ELEMENTS_PER_WAVELENGTH)
+
+
+def pieces_of(wires: Wires, frequency_hz: float, options: Options) -> tuple[tuple[Piece, ...], Mode]:
+    """All conductors meshed for frequencies up to the given one [Hz]."""
+    mode = choose_mode(wires, frequency_hz, options)
+    gap_m = least_surface_gap_m(wires)
+    pieces = []
+    for conductor in wires.conductors:
+        largest_m = largest_element_m(conductor, frequency_hz)
+        if mode.families:
+            largest_m = max(min(largest_m, 0.75 * gap_m), largest_m / FINEST_FACTOR)
+        pieces.append(piece_of(conductor, plan_nodes(conductor, largest_m, options.refinement), mode))
+    return tuple(pieces), mode
+
+
+def piece_of(conductor: Conductor, parts: tuple[Floats, ...], mode: Mode) -> Piece:
+    """A conductor with given node fractions: the same ones for one that differs in size only."""
+    mesh = build(conductor, parts)
+    skin = surface(mesh, mode.azimuths, mode.families) if mode.families else None
+    return Piece(conductor, parts, mesh, sample(mesh), skin)
+
+
+def offsets(pieces: tuple[Piece, ...]) -> tuple[int, ...]:
+    """First row of every piece in the matrix, and the number of rows at the end."""
+    return tuple(int(n) for n in np.concatenate([[0], np.cumsum([piece.unknowns for piece in pieces])]))
