@@ -9,13 +9,29 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any, Literal
 
+from boomwright.plan.frame import IDENTITY, Matrix
+
 if TYPE_CHECKING:
     from boomwright.plan.plan import Plan
 
-Matrix = tuple[tuple[float, float, float, float], ...]
-"""A rigid motion, 4 x 4, row by row: point in the file = matrix x point in the design's frame [mm]."""
-
-IDENTITY: Matrix = ((1.0, 0.0, 0.0, 0.0), (0.0, 1.0, 0.0, 0.0), (0.0, 0.0, 1.0, 0.0), (0.0, 0.0, 0.0, 1.0))
+__all__ = [
+    "IDENTITY",
+    "Body",
+    "Colour",
+    "Contour",
+    "DrawingPiece",
+    "Expectation",
+    "Lettering",
+    "Mark",
+    "Matrix",
+    "Operation",
+    "Part",
+    "Piece",
+    "Probe",
+    "Process",
+    "SolidPiece",
+    "TablePiece",
+]
 
 Process = Literal["assembly", "print", "laser", "cnc", "bench"]
 Operation = Literal["cut", "score", "engrave"]

@@ -2,21 +2,62 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from boomwright.design.model import Boom, Design, Seat
-from boomwright.plan.seat import SeatPlan
+from boomwright.design.rules import require_boom
+from boomwright.errors import Fault, PlanFault
+from boomwright.plan.comb import CombPlan, plan_comb
+from boomwright.plan.cradle import CradlePlan, cradle_left_out, plan_cradle
+from boomwright.plan.mould import MouldPlan, plan_mould
+from boomwright.plan.seat import SeatPlan, plan_seat
 from boomwright.plan.size import Size
 from boomwright.shop.profile import Shop
 
 
 @dataclass(frozen=True)
 class Plan:
-    """A whole plan. `left_out` says for a sub-plan that is None why the design has no such part."""
+    """A whole plan.
+
+    faults  by part name: why this shop cannot make that part of this design; empty when it can
+    """
 
     design: Design
     shop: Shop
     boom: Boom
-    seat_wish: Seat
+    wished_seat: Seat
     seat: SeatPlan
+    comb: CombPlan
+    mould: MouldPlan
     sizes: tuple[Size, ...]
+    laid: CradlePlan | None = None
+    faults: dict[str, tuple[Fault, ...]] = field(default_factory=dict)
+
+    @property
+    def cradle(self) -> CradlePlan:
+        """The cradle's plan; raises PlanFault for a design that has no cradle."""
+        if self.laid is None:
+            raise PlanFault([Fault("rod", cradle_left_out(self.design) or "no cradle", "leave the cradle out")])
+        return self.laid
+
+
+def make_plan(design: Design, shop: Shop) -> Plan:
+    """Work out every size.
+
+    Raises DesignFault when the design has no boom, PlanFault when its seats cannot be cut at all. What only one part
+    stumbles over stands in `Plan.faults` under that part's name.
+    """
+    boom, wished = require_boom(design)
+    seat, sizes, faults = plan_seat(design, boom, wished)
+    if faults:
+        raise PlanFault(faults)
+    comb, comb_sizes = plan_comb(design, shop, seat)
+    mould, mould_sizes, mould_faults = plan_mould(design, shop, seat)
+    by_part = {"mould": tuple(mould_faults)}
+    laid = None
+    if cradle_left_out(design) is None:
+        laid, cradle_sizes, cradle_faults = plan_cradle(design, boom, shop, seat)
+        sizes = sizes + cradle_sizes
+        by_part["cradle"] = tuple(cradle_faults)
+    sizes = [*sizes, *mould_sizes, *comb_sizes]
+    return Plan(design, shop, boom, wished, seat, comb, mould, tuple(sizes), laid, by_part)

@@ -15,6 +15,8 @@ WEB_PER_RADIUS = 1.5
 
 JOINT_ROOM_PER_DIAMETER = 0.5
 LEAST_JOINT_ROOM_MM = 1.0
+POCKET_SHARE_MOST = 0.7
+"""Most of the boom's width that a pocket may take: the groove beside it still seats the conductor."""
 
 
 @dataclass(frozen=True)
@@ -114,7 +116,7 @@ def plan_seat(design: Design, boom: Boom, seat: Seat) -> tuple[SeatPlan, list[Si
     else:
         top = half
         sizes.append(Size("boom.top_mm", top, "mm", "half the boom's width: datum plane = the boom's middle"))
-    grooves = _grooves(crossings, seat, top) if seat.kind == "groove" else ()
+    grooves = _grooves(crossings, seat, top, half) if seat.kind == "groove" else ()
     holes = tuple(_hole(c, seat) for c in crossings if c.gap_mm is None) if seat.kind == "through" else ()
     bonds = tuple(_groove_bond(g, half, top) for g in grooves) + tuple(_hole_bond(h, half) for h in holes)
     for groove, crossing in zip(grooves, crossings, strict=False):
@@ -140,7 +142,7 @@ def _crossings(design: Design) -> list[_Crossing]:
     return sorted(found, key=lambda c: c.at_mm)
 
 
-def _grooves(crossings: list[_Crossing], seat: Seat, top_mm: float) -> tuple[Groove, ...]:
+def _grooves(crossings: list[_Crossing], seat: Seat, top_mm: float, half_width_mm: float) -> tuple[Groove, ...]:
     grooves = []
     for crossing in crossings:
         radius = crossing.outer_mm / 2.0 + seat.glue_gap_mm
@@ -151,7 +153,8 @@ def _grooves(crossings: list[_Crossing], seat: Seat, top_mm: float) -> tuple[Gro
             free = [abs(c.at_mm - crossing.at_mm) - c.outer_mm / 2.0 - seat.glue_gap_mm - radius for c in others]
             # The pocket weakens the web only in the middle: half of the bare web stays.
             half_x = radius + max(0.0, min([room, *(f / 2.0 for f in free)]))
-            pocket = Pocket(half_x, crossing.gap_mm / 2.0 + 2.0 * room)
+            half_y = min(crossing.gap_mm / 2.0 + 2.0 * room, POCKET_SHARE_MOST * half_width_mm)
+            pocket = Pocket(half_x, half_y)
         grooves.append(Groove(crossing.tag, crossing.at_mm, radius, top_mm + radius, pocket))
     return tuple(grooves)
 

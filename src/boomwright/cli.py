@@ -1,0 +1,135 @@
+"""The command line: parse, call, print, exit status. No logic."""
+
+from __future__ import annotations
+
+import sys
+from enum import StrEnum
+from pathlib import Path
+from typing import Annotated, NoReturn
+
+import typer
+
+from boomwright import __version__
+from boomwright.errors import AccessError, BoomwrightError, InputFault
+
+DONE, FAULT, NOT_MET, NO_ACCESS, INTERRUPTED = 0, 2, 3, 4, 130
+MOST_FAILURES_SHOWN = 20
+
+app = typer.Typer(
+    name="boomwright",
+    help="From the electrical figures of a small beam antenna to checked fabrication files.",
+    no_args_is_help=True,
+    pretty_exceptions_enable=False,
+    rich_markup_mode=None,
+)
+
+Quiet = Annotated[bool, typer.Option("-q", "--quiet", help="Print faults and failures only.")]
+AsJson = Annotated[bool, typer.Option("--json", help="Print one JSON document on stdout and nothing else there.")]
+
+
+class Subject(StrEnum):
+    """What `show` can list."""
+
+    parts = "parts"
+    materials = "materials"
+    cables = "cables"
+    shop = "shop"
+    schema = "schema"
+
+
+def _version(wanted: bool) -> None:
+    if wanted:
+        typer.echo(f"boomwright {__version__}")
+        raise typer.Exit
+
+
+@app.callback()
+def _root(
+    version: Annotated[
+        bool, typer.Option("--version", callback=_version, is_eager=True, help="Print the version and exit.")
+    ] = False,
+) -> None:
+    pass
+
+
+@app.command()
+def make(
+    design: Annotated[Path, typer.Argument(help="The design file (TOML).")],
+    shop: Annotated[Path | None, typer.Option(help="The shop file (TOML); absent = the built-in shop.")] = None,
+    out: Annotated[Path | None, typer.Option(help="The output folder; absent = outputs/NAME.")] = None,
+    only: Annotated[list[str] | None, typer.Option(help="Make only this part (may be repeated).")] = None,
+    quiet: Quiet = False,
+) -> None:
+    """Make every file a design needs, measure each one, and say what came out."""
+    from boomwright.pipeline import make as run
+
+    made = run(design, shop, out, only or (), _progress)
+    if not quiet:
+        for size in made.plan.sizes:
+            typer.echo(str(size))
+        for name, reason in made.manifest.left_out.items():
+            typer.echo(f"left out: {name}: {reason}")
+        typer.echo(f"{len(made.manifest.entries)} files in {made.folder}")
+    _judge(made.audit, quiet)
+
+
+@app.command()
+def audit(
+    folder: Annotated[Path, typer.Argument(metavar="DIR", help="A folder that make wrote.")],
+    as_json: AsJson = False,
+    quiet: Quiet = False,
+) -> None:
+    """Measure the files of a folder again and hold them against the design kept beside them."""
+    from boomwright.audit import audit_folder
+
+    result = audit_folder(folder)
+    if as_json:
+        typer.echo(result.as_json(), nl=False)
+        raise typer.Exit(DONE if result.ok else NOT_MET)
+    _judge(result, quiet)
+
+
+@app.command()
+def show(subject: Annotated[Subject, typer.Argument(help="What to list.")]) -> None:
+    """List what the program knows: parts, materials, cables, the built-in shop, the design file's schema."""
+    from boomwright.listing import listing
+
+    typer.echo(listing(subject.value))
+
+
+def _judge(result: object, quiet: bool) -> NoReturn:
+    from boomwright.audit import Audit
+
+    assert isinstance(result, Audit)
+    for finding in result.failures[:MOST_FAILURES_SHOWN]:
+        typer.echo(f"not met: {finding}", err=True)
+    more = len(result.failures) - MOST_FAILURES_SHOWN
+    if more > 0:
+        typer.echo(f"not met: {more} more, see audit.json or --json", err=True)
+    if not quiet:
+        typer.echo(f"audit: {len(result.findings)} quantities measured, {len(result.failures)} not met")
+    raise typer.Exit(DONE if result.ok else NOT_MET)
+
+
+def _progress(step: str) -> None:
+    """One line that is written over, on a terminal only."""
+    if sys.stderr.isatty():
+        sys.stderr.write(f"\r\x1b[K{step}")
+        sys.stderr.flush()
+
+
+def main() -> None:
+    """Run the command line; every error raised on purpose becomes a message and an exit status."""
+    try:
+        app()
+    except InputFault as fault:
+        typer.echo(str(fault), err=True)
+        sys.exit(FAULT)
+    except AccessError as error:
+        typer.echo(f"boomwright: {error.strerror or error}", err=True)
+        sys.exit(NO_ACCESS)
+    except BoomwrightError as error:
+        typer.echo(f"boomwright: {error}", err=True)
+        sys.exit(NO_ACCESS)
+    except KeyboardInterrupt:
+        sys.exit(INTERRUPTED)

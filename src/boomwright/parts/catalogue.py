@@ -1,0 +1,36 @@
+"""The parts, one line each. Third parties add theirs through the entry-point group `boomwright.parts`."""
+
+from __future__ import annotations
+
+from importlib import import_module
+from importlib.metadata import entry_points
+
+from boomwright.pieces import Part
+from boomwright.registry import Catalogue
+
+ENTRY_POINTS = "boomwright.parts"
+
+_OWN = (
+    "boomwright.parts.antenna:AntennaPart",
+    "boomwright.parts.boom:BoomPart",
+    "boomwright.parts.rod:RodPart",
+    "boomwright.parts.sleeve:SleevePart",
+    "boomwright.parts.driven:DrivenPart",
+    "boomwright.parts.cut_list:CutListPart",
+    "boomwright.parts.cradle:CradlePart",
+    "boomwright.parts.mould:Mould",
+    "boomwright.parts.comb:SpacingComb",
+)
+
+
+def _fill(catalogue: Catalogue[Part]) -> None:
+    for line in _OWN:
+        module, name = line.split(":")
+        part = getattr(import_module(module), name)()
+        catalogue.enter(part.name, part)
+    for point in sorted(entry_points(group=ENTRY_POINTS), key=lambda p: p.name):
+        part = point.load()()
+        catalogue.enter(part.name, part)
+
+
+PARTS: Catalogue[Part] = Catalogue("part", _fill)

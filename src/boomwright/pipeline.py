@@ -1,0 +1,117 @@
+"""The main job from top to bottom: design file, plan, solids, files, audit, in a folder swapped in at the end."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
+from pathlib import Path
+
+from boomwright.audit import DESIGN_FILE, SHOP_FILE, Audit, audit_folder
+from boomwright.audit import FILE as AUDIT_FILE
+from boomwright.design.tomlfile import load_design, write_design
+from boomwright.errors import CatalogueError, Fault, InputFault, PlanFault
+from boomwright.folder import check_replaceable, fresh_folder
+from boomwright.formats.catalogue import FORMATS
+from boomwright.formats.format import FileEntry
+from boomwright.manifest import Manifest, write_manifest
+from boomwright.parts.catalogue import PARTS
+from boomwright.pieces import IDENTITY, Part, Piece, TablePiece
+from boomwright.plan.plan import Plan, make_plan
+from boomwright.shop.tomlfile import load_shop, write_shop
+
+OUTPUTS = Path("outputs")
+ALWAYS = "antenna"
+"""The part that is always made: the others are checked against it."""
+
+SHOP_SECTIONS = ("printer", "laser", "saw", "accuracy", "cradle", "mould", "former", "stock")
+Progress = Callable[[str], None]
+
+
+@dataclass(frozen=True)
+class Made:
+    """What a run left: the folder, the plan, the manifest and the audit."""
+
+    folder: Path
+    plan: Plan
+    manifest: Manifest
+    audit: Audit
+
+
+def make(
+    design_path: Path,
+    shop_path: Path | None = None,
+    out: Path | None = None,
+    only: Sequence[str] = (),
+    progress: Progress = lambda step: None,
+) -> Made:
+    """Build, write and audit everything a design needs.
+
+    design_path  the design file
+    shop_path    the shop file, None = the built-in shop
+    out          the output folder, None = outputs/NAME
+    only         part names to make, none = all
+    progress     called with a word or two before each step
+
+    Raises InputFault for what the user gave, AccessError for what could not be read or written: nothing is changed.
+    """
+    design, shop = load_design(design_path), load_shop(shop_path)
+    chosen, plan = _chosen(only), None
+    try:
+        plan = make_plan(design, shop)
+        left_out = {part.name: reason for part in chosen if (reason := part.left_out(plan)) is not None}
+        parts = [part for part in chosen if part.name not in left_out]
+        faults = [fault for part in parts for fault in plan.faults.get(part.name, ())]
+        if faults:
+            raise PlanFault(dict.fromkeys(faults))
+    except InputFault as fault:
+        raise _in_files(fault, design_path, shop_path) from None
+    target = out if out is not None else OUTPUTS / design.name
+    check_replaceable(target)
+    with fresh_folder(target) as folder:
+        entries = [FileEntry(DESIGN_FILE, "design", "", "toml", "mm", IDENTITY)]
+        entries.append(FileEntry(SHOP_FILE, "shop", "", "toml", "mm", IDENTITY))
+        (folder / DESIGN_FILE).write_text(write_design(design), "utf-8")
+        (folder / SHOP_FILE).write_text(write_shop(shop), "utf-8")
+        for part in parts:
+            progress(f"building {part.name}")
+            entries += [entry for piece in part.build(plan) for entry in _write(part, piece, folder)]
+        manifest = write_manifest(folder, entries, [part.name for part in parts], left_out, plan.sizes)
+        progress("measuring the files")
+        audit = audit_folder(folder)
+        (folder / AUDIT_FILE).write_text(audit.as_json(), "utf-8")
+        progress("")
+    return Made(target, plan, manifest, audit)
+
+
+def _chosen(only: Sequence[str]) -> list[Part]:
+    try:
+        wanted = {PARTS[name].name for name in only}
+    except CatalogueError as error:
+        raise InputFault([Fault("--only", str(error), "give a name that `boomwright show parts` lists")]) from None
+    return [part for part in PARTS if not wanted or part.name in wanted or part.name == ALWAYS]
+
+
+def _write(part: Part, piece: Piece, folder: Path) -> list[FileEntry]:
+    """Write a piece in every format that takes it."""
+    entries = []
+    place = folder if piece.process == "assembly" else folder / piece.process
+    place.mkdir(exist_ok=True)
+    for form in FORMATS:
+        if form.takes(piece):
+            path = place / f"{piece.stem}{form.suffix}"
+            form.write(piece, path)
+            frame = IDENTITY if isinstance(piece, TablePiece) else piece.frame
+            offsets = {} if isinstance(piece, TablePiece) or form.name == "step" else dict(piece.offsets)
+            name = path.relative_to(folder).as_posix()
+            entries.append(FileEntry(name, part.name, piece.process, form.name, form.unit, frame, offsets))
+    return entries
+
+
+def _in_files(fault: InputFault, design_path: Path, shop_path: Path | None) -> InputFault:
+    """Faults of the plan, each naming the file whose key it is."""
+    shop_file = str(shop_path) if shop_path else "built-in shop"
+    named = []
+    for one in fault.faults:
+        of_shop = one.path.split(".")[0].split("[")[0] in SHOP_SECTIONS
+        named.append(one if one.file else replace(one, file=shop_file if of_shop else str(design_path)))
+    return type(fault)(named)
