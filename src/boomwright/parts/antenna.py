@@ -33,8 +33,9 @@ class AntennaPart(Part):
         found = [e for rod in plan.design.rods for e in expect_rod(plan, rod.tag, FILE)]
         found += expect_driven(plan, FILE)
         found += expect_seats(plan, FILE)
-        names = len(antenna_names(plan))
-        found.append(Expectation(FILE, "number of parts", names, 0.0, "parts", Probe("body_count")))
+        halves = 1 if plan.design.driven.form == "straight" else 0
+        solids = len(antenna_names(plan)) + halves
+        found.append(Expectation(FILE, "number of solids", solids, 0.0, "solids", Probe("solid_count")))
         overlap = Probe("overlap_mm3", {"within": "all"})
         found.append(Expectation(FILE, "overlap of any two parts", 0.0, 1e-6, "mm3", overlap))
         return tuple(found)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from boomwright.parts.palette import colour_of
@@ -112,7 +113,7 @@ def _groove_tool(groove: Groove, seat: SeatPlan) -> Shape:
     y, r, x = -seat.half_width_mm - OVERRUN_MM, groove.radius_mm, groove.at_mm
     top = seat.top_mm + OVERRUN_MM
     corners = [cq.Vector(x + r, y, 0), cq.Vector(x + r, y, top), cq.Vector(x - r, y, top), cq.Vector(x - r, y, 0)]
-    edges = [cq.Edge.makeLine(a, b) for a, b in zip(corners, corners[1:], strict=False)]
+    edges = [cq.Edge.makeLine(a, b) for a, b in pairwise(corners)]
     edges.append(cq.Edge.makeThreePointArc(corners[3], cq.Vector(x, y, -r), corners[0]))
     return cq.Solid.extrudeLinear(cq.Wire.assembleEdges(edges), [], cq.Vector(0, -2.0 * y, 0))
 
