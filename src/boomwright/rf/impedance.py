@@ -33,6 +33,7 @@ class Impedance:
     def __init__(self, pieces: tuple[Piece, ...], mode: Mode) -> None:
         self.pieces, self.mode = pieces, mode
         self.actions = tuple(own_action(piece, mode) for piece in pieces)
+        self.lossy = tuple(is_lossy(piece) for piece in pieces)
 
     def matrix(self, frequency_hz: float) -> Complexes:
         """The whole matrix [ohm], symmetric, (U, U), at a frequency [Hz]."""
@@ -47,6 +48,20 @@ class Impedance:
                 total[rows, columns] = part
                 total[columns, rows] = part.T
         return total
+
+
+    def dissipation(self, piece: Piece, frequency_hz: float) -> Complexes:
+        """What loss and coat add to a piece's own block [ohm], (U, U); its real part takes power."""
+        total = np.zeros((piece.unknowns, piece.unknowns), dtype=np.complex128)
+        _add_loss(total, piece, frequency_hz)
+        _add_coat(total, piece, frequency_hz)
+        return total
+
+
+def is_lossy(piece: Piece) -> bool:
+    """True if a piece takes power: a conductor that is not perfect, or a coat with loss."""
+    coat = piece.conductor.coat
+    return not math.isinf(piece.conductor.conductivity_s_m) or (coat is not None and coat.loss_tangent > 0.0)
 
 
 def factor_ohm_m(frequency_hz: float) -> complex:
@@ -82,13 +97,6 @@ def coupling_block(first: Piece, second: Piece, frequency_hz: float, mode: Mode)
     else:
         total = coupling(first.samples, second.samples, k)
     total *= factor_ohm_m(frequency_hz)
-    return total
-
-
-def loss_matrix(piece: Piece, frequency_hz: float) -> Complexes:
-    """What conductor loss and internal reactance add [ohm], (U, U)."""
-    total = np.zeros((piece.unknowns, piece.unknowns), dtype=np.complex128)
-    _add_loss(total, piece, frequency_hz)
     return total
 
 

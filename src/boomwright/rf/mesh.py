@@ -15,9 +15,9 @@ from boomwright.rf.arrays import Floats, Integers
 from boomwright.rf.conductors import Conductor, Folded, Loop, Rod
 from boomwright.rf.outline import outline
 
-GROWTH = 0.6
-TIP_ELEMENT_RADII = 0.3
-CAP_NODES = (1.0, 0.8, 0.45, 0.0)
+GROWTH = 1.4
+TIP_ELEMENT_RADII = 0.005
+CAP_NODES = (1.0, 0.996, 0.985, 0.95, 0.86, 0.65, 0.3, 0.0)
 ELEMENTS_PER_HALF_CIRCLE = 6.0
 
 
