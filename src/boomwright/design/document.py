@@ -90,7 +90,7 @@ def _syntax_fault(message: str, text: str, file: str) -> Fault:
     else:
         where = f"line {place[1]}, column {place[2]}"
     if what.startswith(_TWICE):
-        return Fault(where, f"a key or table is given twice ({what})", "keep one of them", file)
+        return Fault(where, "a key or table is given twice", "keep one of them", file)
     return Fault(where, f"is not TOML: {what}", "correct the line; texts stand in quotes, numbers without", file)
 
 

@@ -76,7 +76,8 @@ def _clearance_faults(design: Design) -> list[Fault]:
     free_mm = _free_room_mm(design, boom)
     if free_mm <= 0.0:
         assert driven.perimeter_mm is not None
-        least_mm = driven.perimeter_mm - 2.0 * math.pi * min(free_mm, 0.0)
+        per_room = 2.0 * math.pi if driven.shape == "circle" else 8.0
+        least_mm = driven.perimeter_mm - per_room * free_mm
         found = f"{driven.perimeter_mm:g} does not clear the boom of {boom.width_mm:g} that passes through the loop"
         return [Fault("driven.perimeter_mm", found, f"give more than {math.ceil(least_mm)} mm, or a thinner boom")]
     return []

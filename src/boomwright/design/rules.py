@@ -60,7 +60,7 @@ def _boom_faults(design: Design) -> list[Fault]:
     if boom.wall_mm >= boom.width_mm / 2.0:
         found = f"{boom.wall_mm:g} leaves no bore in a boom of {boom.width_mm:g}"
         faults.append(Fault("boom.wall_mm", found, "give less than half the width, or 0 for a solid boom"))
-    ends = [(rod.at_mm, rod.outer_diameter_mm / 2.0, rod_name(design, rod)) for rod in design.rods]
+    ends = [(rod.at_mm, rod.outer_diameter_mm / 2.0, f"rod[{rod.file_index}]") for rod in design.rods]
     half = design.driven.outer_diameter_mm / 2.0
     ends += [(at, half, "the driven element") for at in fed_span_mm(design.driven)]
     rear, front = min(at for at, _, _ in ends), max(at for at, _, _ in ends)
@@ -117,7 +117,7 @@ def _touch_faults(design: Design) -> list[Fault]:
         if path in refused:
             continue
         others = [
-            (other.at_mm, other.outer_diameter_mm, rod_name(design, other))
+            (other.at_mm, other.outer_diameter_mm, f"rod[{other.file_index}]")
             for other in design.rods
             if other.file_index < rod.file_index and f"rod[{other.file_index}].at_mm" not in refused
         ]
@@ -152,8 +152,3 @@ def fed_span_mm(driven: Driven) -> tuple[float, ...]:
     if driven.form == "folded" and driven.plane == "flat" and driven.spacing_mm is not None:
         return driven.at_mm, driven.at_mm + driven.spacing_mm
     return (driven.at_mm,)
-
-
-def rod_name(design: Design, rod: Rod) -> str:
-    """How a message calls a rod: by its place in the file."""
-    return f"rod[{rod.file_index}]"

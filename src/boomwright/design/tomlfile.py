@@ -8,7 +8,7 @@ from typing import Any
 
 from boomwright.data.tables import boom_material_names, cable_names, conductor_names, material_names
 from boomwright.design.document import escaped, parse, read_text
-from boomwright.design.keys import LEAST_MM, MOST_MM, REQUIRED, Default, Key, Only, Table, read_table
+from boomwright.design.keys import LEAST_MM, MOST_MM, REQUIRED, Default, Key, Only, Table
 from boomwright.design.model import (
     Adhesive,
     Band,
@@ -23,6 +23,7 @@ from boomwright.design.model import (
     Transmitter,
     arranged,
 )
+from boomwright.design.reader import read_table
 from boomwright.design.rules import design_faults
 from boomwright.design.writer import table_text
 from boomwright.errors import DesignFault, Fault, InputFault

@@ -8,7 +8,8 @@ from typing import Any
 
 from boomwright.data.tables import conductor_names, material_names, refused_sheet
 from boomwright.design.document import escaped, parse, read_text
-from boomwright.design.keys import LEAST_MM, MOST_MM, Key, Table, read_table
+from boomwright.design.keys import LEAST_MM, MOST_MM, Key, Table
+from boomwright.design.reader import read_table
 from boomwright.design.writer import table_text
 from boomwright.errors import Fault, InputFault, ShopFault
 from boomwright.shop.profile import (
