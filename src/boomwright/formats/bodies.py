@@ -1,0 +1,254 @@
+"""Measures on whole bodies of a STEP file: extents, volumes, distances, and what bodies have in common.
+
+Every measure takes (reading, arguments, further readings) and returns one number.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass
+from itertools import combinations
+from typing import Any
+
+import numpy as np
+
+from boomwright.errors import MeasureError
+from boomwright.formats import conductors
+from boomwright.formats.brep import FaceView, ReadBody, StepReading, Vector, exact_box
+
+Arguments = Mapping[str, Any]
+
+TOUCH_MM3 = 1e-6
+"""Common volumes below this are two faces that touch."""
+
+VOLUME_TOLERANCE = 1e-6
+"""Relative error asked of the kernel's integration."""
+
+
+def measure_extent(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """Exact extent of a body, or of all [mm]: `quantity` is min_, max_, size_ or mid_ with x_mm, y_mm or z_mm."""
+    boxes = np.array([body.box for body in _some(reading, arguments)])
+    return extent_of(boxes[:, 0].min(axis=0), boxes[:, 1].max(axis=0), str(arguments["quantity"]))
+
+
+def extent_of(low: Vector, high: Vector, quantity: str) -> float:
+    """One quantity of a box, by its name: `min_x_mm`, `size_z_mm`."""
+    sense, _, axis = quantity.removesuffix("_mm").partition("_")
+    values = {"min": low, "max": high, "size": high - low, "mid": (low + high) / 2.0}
+    if sense not in values or axis not in ("x", "y", "z"):
+        raise MeasureError(f"no such extent: {quantity!r}")
+    return float(values[sense]["xyz".index(axis)])
+
+
+def measure_lowest(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """z of the lowest point of a body, or of all [mm]."""
+    return float(min(body.box[0, 2] for body in _some(reading, arguments)))
+
+
+def measure_overrun(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """How far the bodies overrun a bed `bed_mm` (x, y, z), laid either way round [mm]; 0 when they fit."""
+    boxes = np.array([body.box for body in reading.bodies])
+    return overrun_of(boxes[:, 1].max(axis=0) - boxes[:, 0].min(axis=0), arguments["bed_mm"])
+
+
+def overrun_of(size: Sequence[float] | Vector, bed: Sequence[float]) -> float:
+    """How far a box of this size overruns a bed, x and y either way round [mm]."""
+    return float(max(0.0, max(size[:2]) - max(bed[:2]), min(size[:2]) - min(bed[:2]), size[2] - bed[2]))
+
+
+def measure_volume(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """Volume of a body, or of all [mm³]."""
+    return sum(volume_mm3(body.wrapped) for body in _some(reading, arguments))
+
+
+def volume_mm3(shape: Any) -> float:
+    """Volume of a kernel shape [mm³]."""
+    from OCP.BRepGProp import BRepGProp
+    from OCP.GProp import GProp_GProps
+
+    properties = GProp_GProps()
+    BRepGProp.VolumeProperties_s(shape, properties, VOLUME_TOLERANCE)
+    return float(properties.Mass())
+
+
+def measure_solid_count(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """Number of solids in a body, or in all."""
+    return float(sum(len(body.solids) for body in _some(reading, arguments)))
+
+
+def measure_valid(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """1 when the kernel finds no fault in any body and each has a positive volume, else 0."""
+    from OCP.BRepCheck import BRepCheck_Analyzer
+
+    sound = all(
+        body.solids and BRepCheck_Analyzer(body.wrapped).IsValid() and volume_mm3(body.wrapped) > 0.0
+        for body in _some(reading, arguments)
+    )
+    return float(sound)
+
+
+def measure_clearance(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """Least distance from the material of a body, or of all, to `box` ((low corner), (high corner)) [mm]."""
+    low, high = np.asarray(arguments["box"], dtype=float)
+    return min(_distance_to_box(body, low, high) for body in _some(reading, arguments))
+
+
+def _distance_to_box(body: ReadBody, low: Vector, high: Vector) -> float:
+    from OCP.BRepExtrema import BRepExtrema_DistShapeShape
+    from OCP.BRepPrimAPI import BRepPrimAPI_MakeBox
+    from OCP.gp import gp_Pnt
+
+    high = np.maximum(high, low + 1e-6)
+    if any(_holds(solid, (low + high) / 2.0) for solid in body.solids):
+        return 0.0
+    block = BRepPrimAPI_MakeBox(gp_Pnt(*map(float, low)), gp_Pnt(*map(float, high))).Shape()
+    # The boxes' distance never exceeds the faces' own: nearest boxes first, stop when no better one can come.
+    lows, highs = (np.array([getattr(face, side) for face in body.faces]) for side in ("low", "high"))
+    apart = np.linalg.norm(np.maximum(0.0, np.maximum(low - highs, lows - high)), axis=1)
+    best = float("inf")
+    for index in np.argsort(apart, kind="stable"):
+        if apart[index] >= best:
+            break
+        best = min(best, BRepExtrema_DistShapeShape(block, body.faces[index].face).Value())
+    return best
+
+
+def _holds(solid: Any, point: Vector) -> bool:
+    from OCP.BRepClass3d import BRepClass3d_SolidClassifier
+    from OCP.gp import gp_Pnt
+    from OCP.TopAbs import TopAbs_OUT
+
+    box = exact_box(solid)
+    if np.any(point < box[0]) or np.any(point > box[1]):
+        return False
+    return bool(BRepClass3d_SolidClassifier(solid, gp_Pnt(*map(float, point)), 1e-7).State() != TopAbs_OUT)
+
+
+@dataclass(frozen=True)
+class _Placed:
+    """A solid in the design's frame, its exact box, and which file it came from."""
+
+    file: int
+    solid: Any
+    low: Vector
+    high: Vector
+
+
+def measure_overlap(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """Volume common to any two bodies of different files [mm³]; with `within` = "all" also of the same file.
+
+    names, also_names    which bodies; default all. `also_names`: one list for every further file, or one list a file
+    frame, also_frames   design's frame to each file's frame; default the same for all
+    """
+    files = [reading, *also]
+    also_names = arguments.get("also_names")
+    if also_names is None or (also_names and isinstance(also_names[0], str)):
+        also_names = [also_names] * len(also)
+    names = [arguments.get("names"), *also_names]
+    frames = [arguments.get("frame"), *(arguments.get("also_frames") or [None] * len(also))]
+    if not len(names) == len(frames) == len(files):
+        raise MeasureError("also_names and also_frames must have one entry for each further file")
+    placed = [
+        solid
+        for index, (file, wanted, frame) in enumerate(zip(files, names, frames, strict=True))
+        for body in file.chosen(wanted)
+        for solid in _in_design_frame(index, body, frame)
+    ]
+    within = arguments.get("within") == "all"
+    partners: dict[int, list[_Placed]] = {}
+    for (index, one), (_, other) in combinations(enumerate(placed), 2):
+        if (within or one.file != other.file) and np.all(
+            np.minimum(one.high, other.high) > np.maximum(one.low, other.low)
+        ):
+            partners.setdefault(index, []).append(other)
+    return sum(_common_mm3(placed[index], others) for index, others in partners.items())
+
+
+def _in_design_frame(file: int, body: ReadBody, frame: Any) -> list[_Placed]:
+    from OCP.BRepBuilderAPI import BRepBuilderAPI_Transform
+    from OCP.gp import gp_Trsf
+
+    solids: Sequence[Any] = body.solids
+    if frame is not None and not np.array_equal(np.asarray(frame, dtype=float), np.eye(4)):
+        motion = gp_Trsf()
+        motion.SetValues(*(float(value) for value in np.asarray(frame, dtype=float)[:3].ravel()))
+        solids = [BRepBuilderAPI_Transform(solid, motion.Inverted(), True).Shape() for solid in solids]
+    return [_Placed(file, solid, *exact_box(solid)) for solid in solids]
+
+
+def _common_mm3(one: _Placed, others: Sequence[_Placed]) -> float:
+    """Volume of `one` that lies in any of the others; one boolean when the others cannot touch each other."""
+    from OCP.BRepAlgoAPI import BRepAlgoAPI_Common
+    from OCP.TopTools import TopTools_ListOfShape
+
+    apart = all(np.any(np.minimum(a.high, b.high) < np.maximum(a.low, b.low)) for a, b in combinations(others, 2))
+    total = 0.0
+    for group in [list(others)] if apart else [[other] for other in others]:
+        arguments, tools = TopTools_ListOfShape(), TopTools_ListOfShape()
+        arguments.Append(one.solid)
+        for other in group:
+            tools.Append(other.solid)
+        common = BRepAlgoAPI_Common()
+        common.SetArguments(arguments)
+        common.SetTools(tools)
+        common.SetNonDestructive(True)
+        common.Build()
+        if not common.IsDone() or common.HasErrors():
+            raise MeasureError("the kernel could not decide whether bodies overlap")
+        volume = volume_mm3(common.Shape())
+        total += volume if volume > TOUCH_MM3 else 0.0
+    return total
+
+
+def _round_faces(body: ReadBody, at_mm: float) -> FaceView:
+    """The bore or channel across the boom nearest to `at_mm`, at most 1 mm off; of several the longest."""
+    across = [
+        face
+        for face in body.faces
+        if face.kind == "cylinder" and face.concave and abs(face.direction[1]) > np.cos(np.radians(1.0))
+    ]
+    near = [face for face in across if abs(face.origin[0] - at_mm) <= 1.0]
+    if not near:
+        raise MeasureError(f"{body.name}: no groove or hole within 1 mm of x = {at_mm:g}")
+    return min(near, key=lambda f: (round(abs(f.origin[0] - at_mm), 6), f.low[1] - f.high[1]))
+
+
+def measure_groove(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """Of the groove across the boom near `at_mm`: `quantity` at_mm, radius_mm, height_mm (its axis) or depth_mm.
+
+    Depth runs from the highest point of the body down to the groove's bottom [mm].
+    """
+    body = reading.body(arguments.get("name"))
+    face = _round_faces(body, float(arguments["at_mm"]))
+    quantity = str(arguments["quantity"])
+    values = {
+        "at_mm": face.origin[0],
+        "radius_mm": face.radius_mm,
+        "diameter_mm": 2.0 * face.radius_mm,
+        "height_mm": face.origin[2],
+        "depth_mm": body.box[1, 2] - (face.origin[2] - face.radius_mm),
+    }
+    if quantity not in values:
+        raise MeasureError(f"no such quantity of a groove or hole: {quantity!r}")
+    return float(values[quantity])
+
+
+MEASURES: dict[str, Callable[[Any, Arguments, Sequence[Any]], float]] = {
+    "extent": measure_extent,
+    "lowest_mm": measure_lowest,
+    "overrun_mm": measure_overrun,
+    "volume_mm3": measure_volume,
+    "solid_count": measure_solid_count,
+    "valid": measure_valid,
+    "clearance_mm": measure_clearance,
+    "overlap_mm3": measure_overlap,
+    "groove": measure_groove,
+    "hole": measure_groove,
+    "rod": conductors.measure_rod,
+    "driven": conductors.measure_driven,
+}
+
+
+def _some(reading: StepReading, arguments: Arguments) -> tuple[ReadBody, ...]:
+    name = arguments.get("name")
+    return reading.bodies if name is None else (reading.body(name),)

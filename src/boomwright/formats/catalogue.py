@@ -1,0 +1,16 @@
+"""The catalogue of formats: one line a format. Looking at it loads no CAD."""
+
+from __future__ import annotations
+
+from boomwright.formats.format import Format
+from boomwright.registry import Catalogue
+
+
+def _fill(catalogue: Catalogue[Format]) -> None:
+    from boomwright.formats import csvtable, dxf, step, stl, threemf
+
+    for entry in (step.STEP, stl.STL, threemf.THREEMF, dxf.DXF, csvtable.CSV):
+        catalogue.enter(entry.name, entry)
+
+
+FORMATS: Catalogue[Format] = Catalogue("format", _fill)

@@ -1,0 +1,149 @@
+"""DXF R2010 in millimetres: one layer an operation, closed polylines with true arcs. Writer and reader.
+
+Coordinates are those of the file; a laser's kerf is already taken in them.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from contextlib import contextmanager
+from pathlib import Path
+from typing import Any
+
+from boomwright.errors import CatalogueError, MeasureError
+from boomwright.formats import outlines
+from boomwright.formats.format import FileEntry, Format
+from boomwright.formats.outlines import DxfReading, Outline
+from boomwright.pieces import DrawingPiece, Expectation, Piece, Probe
+from boomwright.shop.profile import Shop
+
+MILLIMETRES = 4
+"""The DXF header's number for the unit ($INSUNITS)."""
+
+PART_GAP_MM = 1.0
+"""Least room between two parts on a sheet, besides two kerfs (product rule)."""
+
+LAYER_COLOURS = (1, 5, 3, 6, 4, 2, 7)
+"""Colour numbers, given to the layers in the order of their names."""
+
+
+class Dxf(Format):
+    """The DXF format."""
+
+    name = "dxf"
+    suffix = ".dxf"
+    unit = "mm"
+
+    def takes(self, piece: Piece) -> bool:
+        """Flat drawings."""
+        return isinstance(piece, DrawingPiece)
+
+    def write(self, piece: Piece, path: Path) -> None:
+        """A polyline for each mark, a text for each lettering; no dates, no random ids."""
+        assert isinstance(piece, DrawingPiece)
+        with _fixed_dates():
+            document = _document(piece)
+            document.saveas(path)
+
+    def read(self, path: Path) -> DxfReading:
+        """Every line, arc, circle and polyline as an outline, and the number of errors ezdxf's audit finds."""
+        import ezdxf
+        from ezdxf.lldxf.const import DXFError
+
+        try:
+            document = ezdxf.readfile(path)
+        except (OSError, DXFError, UnicodeError, ValueError, KeyError, IndexError, TypeError) as error:
+            raise MeasureError(f"{path.name}: not a readable DXF file ({error})") from error
+        audit = document.audit()
+        found = [outline for entity in document.modelspace() for outline in _outlines(entity)]
+        unit = int(document.header.get("$INSUNITS", 0))
+        return DxfReading(path, tuple(found), len(audit.errors) + len(audit.fixes), unit)
+
+    def measure(self, reading: Any, probe: Probe, also: Sequence[Any]) -> float:
+        """One quantity; the measures are listed in `outlines.MEASURES`."""
+        if probe.measure not in outlines.MEASURES:
+            raise CatalogueError(f"unknown DXF measure {probe.measure!r} (known: {', '.join(outlines.MEASURES)})")
+        return outlines.MEASURES[probe.measure](reading, probe.arguments, also)
+
+    def expect(self, entry: FileEntry, shop: Shop) -> tuple[Expectation, ...]:
+        """A sound drawing in millimetres; a laser's also closed, inside the sheet, with room between the parts."""
+
+        def none(what: str, unit: str, measure: str, arguments: dict[str, Any] | None = None) -> Expectation:
+            return Expectation(entry.path, what, 0.0, 0.0, unit, Probe(measure, arguments or {}))
+
+        rules = [
+            none("errors of the drawing's audit", "", "audit_errors"),
+            none("entities twice", "", "duplicates"),
+            none("entities without length", "", "zero_length"),
+            Expectation(entry.path, "unit of the drawing", float(MILLIMETRES), 0.0, "", Probe("unit_code")),
+        ]
+        if entry.process == "laser":
+            laser = shop.laser
+            layers = [laser.layers.cut, laser.layers.score, laser.layers.engrave]
+            room = 2.0 * laser.kerf_mm + PART_GAP_MM
+            rules += [
+                none("open contours on the cutting layer", "", "open_contours", {"layer": laser.layers.cut}),
+                none("layers the shop does not know", "", "unknown_layers", {"layers": layers}),
+                none("overrun of the sheet", "mm", "outside_mm", {"size": list(laser.sheet_size_mm)}),
+                none("parts nearer than 2 kerfs + 1", "", "too_near", {"layer": laser.layers.cut, "least_mm": room}),
+            ]
+        return tuple(rules)
+
+
+DXF = Dxf()
+
+
+@contextmanager
+def _fixed_dates() -> Iterator[None]:
+    """ezdxf writes the time of day unless told otherwise; its setting belongs to the process and is put back."""
+    import ezdxf
+
+    before = ezdxf.options.write_fixed_meta_data_for_testing
+    ezdxf.options.write_fixed_meta_data_for_testing = True
+    try:
+        yield
+    finally:
+        ezdxf.options.write_fixed_meta_data_for_testing = before
+
+
+def _document(piece: DrawingPiece) -> Any:
+    import ezdxf
+
+    document = ezdxf.new("R2010")
+    document.header["$INSUNITS"] = MILLIMETRES
+    document.header["$MEASUREMENT"] = 1
+    space = document.modelspace()
+    names = sorted({mark.layer for mark in piece.marks} | {text.layer for text in piece.lettering})
+    for index, name in enumerate(names):
+        if name not in document.layers:
+            document.layers.add(name, color=LAYER_COLOURS[index % len(LAYER_COLOURS)])
+    for mark in piece.marks:
+        contour = mark.contour
+        space.add_lwpolyline(contour.vertices, format="xyb", close=contour.closed, dxfattribs={"layer": mark.layer})
+    for text in piece.lettering:
+        attributes = {"layer": text.layer, "insert": (text.x_mm, text.y_mm)}
+        space.add_text(text.text, height=text.height_mm, dxfattribs=attributes)
+    points = [(x, y) for mark in piece.marks for x, y, _ in mark.contour.vertices]
+    if points:
+        xs, ys = zip(*points, strict=True)
+        document.header["$EXTMIN"], document.header["$EXTMAX"] = (min(xs), min(ys), 0.0), (max(xs), max(ys), 0.0)
+    return document
+
+
+def _outlines(entity: Any) -> Iterator[Outline]:
+    import math
+
+    kind, layer = entity.dxftype(), entity.dxf.layer
+    if kind == "LWPOLYLINE":
+        vertices = tuple((float(x), float(y), float(bulge)) for x, y, bulge in entity.get_points("xyb"))
+        yield Outline(vertices, bool(entity.closed), layer)
+    elif kind == "LINE":
+        start, end = entity.dxf.start, entity.dxf.end
+        yield Outline(((start.x, start.y, 0.0), (end.x, end.y, 0.0)), False, layer)
+    elif kind == "CIRCLE":
+        (x, y, _), radius = entity.dxf.center, entity.dxf.radius
+        yield Outline(((x - radius, y, 1.0), (x + radius, y, 1.0)), True, layer)
+    elif kind == "ARC":
+        start, end = entity.start_point, entity.end_point
+        sweep = math.radians((entity.dxf.end_angle - entity.dxf.start_angle) % 360.0)
+        yield Outline(((start.x, start.y, math.tan(sweep / 4.0)), (end.x, end.y, 0.0)), False, layer)
