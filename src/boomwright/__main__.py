@@ -1,0 +1,5 @@
+"""`python -m boomwright` is the command line."""
+
+from boomwright.cli import main
+
+main()
