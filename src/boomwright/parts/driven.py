@@ -79,6 +79,6 @@ def expect_driven(plan: Plan, file: str) -> tuple[Expectation, ...]:
     if driven.form == "straight":
         b = min(EDGE_BREAK_MM, r / 2.0)
         volume -= 4.0 * math.pi * b * b * (r - b / 3.0)
-    probe = Probe("driven", {"name": "DE", "quantity": "volume_mm3"})
+    probe = Probe("volume_mm3", {"name": "DE"})
     found.append(Expectation(file, "DE volume", volume, VOLUME_ALLOWED_SHARE * volume, "mm3", probe))
     return tuple(found)
