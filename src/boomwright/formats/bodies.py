@@ -14,15 +14,12 @@ import numpy as np
 
 from boomwright.errors import MeasureError
 from boomwright.formats import conductors
-from boomwright.formats.brep import FaceView, ReadBody, StepReading, Vector, exact_box
+from boomwright.formats.brep import FaceView, ReadBody, StepReading, Vector, exact_box, volume_mm3
 
 Arguments = Mapping[str, Any]
 
 TOUCH_MM3 = 1e-6
 """Common volumes below this are two faces that touch."""
-
-VOLUME_TOLERANCE = 1e-6
-"""Relative error asked of the kernel's integration."""
 
 
 def measure_extent(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
@@ -59,16 +56,6 @@ def overrun_of(size: Sequence[float] | Vector, bed: Sequence[float]) -> float:
 def measure_volume(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
     """Volume of a body, or of all [mm³]."""
     return sum(volume_mm3(body.wrapped) for body in _some(reading, arguments))
-
-
-def volume_mm3(shape: Any) -> float:
-    """Volume of a kernel shape [mm³]."""
-    from OCP.BRepGProp import BRepGProp
-    from OCP.GProp import GProp_GProps
-
-    properties = GProp_GProps()
-    BRepGProp.VolumeProperties_s(shape, properties, VOLUME_TOLERANCE)
-    return float(properties.Mass())
 
 
 def measure_solid_count(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:

@@ -16,6 +16,9 @@ from boomwright.errors import MeasureError
 Vector = NDArray[np.float64]
 Kind = Literal["plane", "cylinder", "cone", "sphere", "torus", "general"]
 
+VOLUME_TOLERANCE = 1e-6
+"""Relative error asked of the kernel's integration."""
+
 
 @dataclass(frozen=True)
 class FaceView:
@@ -116,6 +119,16 @@ def exact_box(shape: Any) -> Vector:
     if box.IsVoid():
         raise MeasureError("an empty body has no extent")
     return np.asarray(box.Get(), dtype=float).reshape(2, 3)
+
+
+def volume_mm3(shape: Any) -> float:
+    """Volume of a kernel shape [mm³]."""
+    from OCP.BRepGProp import BRepGProp
+    from OCP.GProp import GProp_GProps
+
+    properties = GProp_GProps()
+    BRepGProp.VolumeProperties_s(shape, properties, VOLUME_TOLERANCE)
+    return float(properties.Mass())
 
 
 def _explore(shape: Any, kind: Any) -> list[Any]:

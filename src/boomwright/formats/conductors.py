@@ -9,7 +9,7 @@ from typing import Any
 import numpy as np
 
 from boomwright.errors import MeasureError
-from boomwright.formats.brep import FaceView, ReadBody, StepReading, Vector
+from boomwright.formats.brep import FaceView, ReadBody, StepReading, Vector, volume_mm3
 
 ALONG_Y = math.cos(math.radians(10.0))
 """An axis within 10 degrees of y counts as along y, so that a tilted rod is measured, not missed."""
@@ -47,16 +47,19 @@ def measure_driven(reading: StepReading, arguments: Mapping[str, Any], also: Seq
     at_mm, height_mm    axis of the fed conductor; of a circular loop, of its lowest point
     length_mm           tip to tip along y, over the outside
     diameter_mm         of the wire
-    gap_mm              opening at the feed, between the centres of the end faces, along the centreline
+    gap_mm              opening at the feed, straight between the centres of the end faces
     spacing_mm          between the fed conductor's axis and the farthest one parallel to it
     drop_mm             fed conductor's axis below z = 0
     perimeter_mm        closed centreline of a loop, gap included
     extent_z_mm         overall height
+    volume_mm3          of the metal
     """
     body = reading.body(arguments.get("name"))
     quantity = str(arguments["quantity"])
     if quantity in ("length_mm", "extent_z_mm"):
         return float(np.ptp(body.box[:, 1 if quantity == "length_mm" else 2]))
+    if quantity == "volume_mm3":
+        return volume_mm3(body.wrapped)
     ring = _ring(body)
     return _of_circle(ring, body, quantity) if ring is not None else _of_wire(body, quantity)
 
@@ -86,13 +89,12 @@ def _of_wire(body: ReadBody, quantity: str) -> float:
 
 def _of_circle(ring: FaceView, body: ReadBody, quantity: str) -> float:
     low_end, high_end = _feed_ends(body)
-    half_chord = float(np.linalg.norm(high_end.centre - low_end.centre)) / 2.0
     values = {
         "at_mm": ring.origin[0],
         "height_mm": ring.origin[2] - ring.radius_mm,
         "drop_mm": ring.radius_mm - ring.origin[2],
         "diameter_mm": 2.0 * ring.minor_mm,
-        "gap_mm": 2.0 * ring.radius_mm * math.asin(min(1.0, half_chord / ring.radius_mm)),
+        "gap_mm": np.linalg.norm(high_end.centre - low_end.centre),
         "perimeter_mm": 2.0 * math.pi * ring.radius_mm,
     }
     return float(_of(values, quantity, "circular loop"))

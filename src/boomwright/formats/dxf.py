@@ -11,7 +11,7 @@ from pathlib import Path
 from typing import Any
 
 from boomwright.errors import CatalogueError, MeasureError
-from boomwright.formats import outlines
+from boomwright.formats import outlines, slots
 from boomwright.formats.format import FileEntry, Format
 from boomwright.formats.outlines import DxfReading, Outline
 from boomwright.pieces import DrawingPiece, Expectation, Piece, Probe
@@ -25,6 +25,8 @@ PART_GAP_MM = 1.0
 
 LAYER_COLOURS = (1, 5, 3, 6, 4, 2, 7)
 """Colour numbers, given to the layers in the order of their names."""
+
+MEASURES = {**outlines.MEASURES, "slot": slots.measure_slot}
 
 
 class Dxf(Format):
@@ -60,10 +62,10 @@ class Dxf(Format):
         return DxfReading(path, tuple(found), len(audit.errors) + len(audit.fixes), unit)
 
     def measure(self, reading: Any, probe: Probe, also: Sequence[Any]) -> float:
-        """One quantity; the measures are listed in `outlines.MEASURES`."""
-        if probe.measure not in outlines.MEASURES:
-            raise CatalogueError(f"unknown DXF measure {probe.measure!r} (known: {', '.join(outlines.MEASURES)})")
-        return outlines.MEASURES[probe.measure](reading, probe.arguments, also)
+        """One quantity; the measures are listed in `MEASURES`."""
+        if probe.measure not in MEASURES:
+            raise CatalogueError(f"unknown DXF measure {probe.measure!r} (known: {', '.join(MEASURES)})")
+        return MEASURES[probe.measure](reading, probe.arguments, also)
 
     def expect(self, entry: FileEntry, shop: Shop) -> tuple[Expectation, ...]:
         """A sound drawing in millimetres; a laser's also closed, inside the sheet, with room between the parts."""
