@@ -15,6 +15,7 @@ from boomwright.design.model import Boom, Design, Seat
 from boomwright.design.rules import check_design, require_boom
 from boomwright.design.tomlfile import load_design, read_design, write_design
 from boomwright.errors import AccessError, DesignFault, InputFault
+from boomwright.shop.profile import Shop
 
 EXAMPLES = Path(__file__).parents[2] / "examples"
 TOO_LARGE = "larger than 1 MiB\n  fix: name the right file; a real one has a few kilobytes"
@@ -233,6 +234,20 @@ def test_examples_load_and_come_back_equal(name: str) -> None:
     assert design.name == name
     assert read_design(write_design(design)) == design
     require_boom(design)
+
+
+def test_the_gauge_fits_an_ordinary_bed_and_the_gateway_does_not() -> None:
+    gauge, gateway = (load_design(EXAMPLES / f"{name}.toml") for name in ("stream-gauge-868", "gateway-433"))
+    bed_mm = min(Shop().printer.bed_mm[:2])
+    assert boom_length_mm(gauge) <= bed_mm - 10.0
+    assert max(rod.length_mm for rod in gauge.rods) + 8.0 <= bed_mm - 5.0
+    assert boom_length_mm(gateway) > 3.0 * bed_mm
+
+
+def boom_length_mm(design: Design) -> float:
+    """Tail, span and nose of a design whose outermost conductors are rods."""
+    boom, _ = require_boom(design)
+    return boom.tail_mm + design.rods[-1].at_mm - design.rods[0].at_mm + boom.nose_mm
 
 
 def test_the_normalised_file_reads_like_this() -> None:
