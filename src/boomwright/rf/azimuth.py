@@ -11,7 +11,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from boomwright.rf.arrays import Complexes, Floats
-from boomwright.rf.coupling import MIRROR_SIGNS, hat_values, quadrature_points
+from boomwright.rf.coupling import MIRROR_SIGNS, hat_values, quadrature_points, sampling_places
 from boomwright.rf.kernels import spherical_wave
 from boomwright.rf.mesh import Mesh, rings
 
@@ -69,25 +69,28 @@ def azimuth_functions(count: int, half: bool = False) -> Floats:
     return 2.0 * table[:, : count // 2] if half else table
 
 
-def surface(mesh: Mesh, azimuths: int, families: int) -> Surface:
+def surface(mesh: Mesh, azimuths: int, families: int, nearest_m: float = 0.0) -> Surface:
     """Surface samples of a conductor.
 
-    azimuths  points round each ring, even
-    families  1: cosine only (everything symmetric about the conductor's plane), 2: cosine and sine
+    azimuths   points round each ring, even
+    families   1: cosine only (everything symmetric about the conductor's plane), 2: cosine and sine
+    nearest_m  distance from this surface to any other [m]; 0 = all quadrature points
     """
     element, place, weight = quadrature_points(mesh)
     value, slope = hat_values(mesh, element, place)
-    at = rings(mesh, element, place)
+    chosen = sampling_places(mesh, nearest_m)
+    at = rings(mesh, chosen.element, chosen.place)
     aside = np.cross(at.tangent, at.normal) * -1.0
     size = mesh.size_m
-    along = (mesh.travel_m / size)[element]
-    outward = ((mesh.radius_m[:, 1] - mesh.radius_m[:, 0]) / size)[element]
+    along = (mesh.travel_m / size)[chosen.element]
+    outward = ((mesh.radius_m[:, 1] - mesh.radius_m[:, 0]) / size)[chosen.element]
     span = weight * size[element]
-    crowd = mesh.bend_rad_m[element] * at.radius_m
+    crowd = mesh.bend_rad_m[chosen.element] * at.radius_m
     keep, column = len(value), np.arange(len(element))
     inside = np.zeros((mesh.elements, len(element)))
     inside[element, column] = span
-    hats, slopes = value * span, slope * weight
+    inside = inside @ chosen.shares
+    hats, slopes = (value * span) @ chosen.shares, (slope * weight) @ chosen.shares
     around = inside * at.radius_m
     unknowns = keep + families * (keep + mesh.elements)
     # (row, moments along tangent, normal, aside): {azimuth function: values}

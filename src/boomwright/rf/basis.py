@@ -9,7 +9,7 @@ import numpy as np
 
 from boomwright.rf.arrays import Floats, wavenumber_rad_m
 from boomwright.rf.azimuth import Surface, surface
-from boomwright.rf.clearance import least_spacing_radii, least_surface_gap_m
+from boomwright.rf.clearance import least_spacing_radii, nearest_others
 from boomwright.rf.conductors import Conductor, Folded, Loop, Rod, Wires
 from boomwright.rf.coupling import Samples, sample
 from boomwright.rf.mesh import Mesh, build, plan_nodes
@@ -51,13 +51,18 @@ class Mode:
 
 @dataclass(frozen=True)
 class Piece:
-    """A meshed conductor; `surface` is there when current varies round the circumference."""
+    """A meshed conductor, sampled for the others and, if it is closed, for itself.
+
+    Surfaces are there when current varies round the circumference; what a rod has of its own is not used.
+    """
 
     conductor: Conductor
     parts: tuple[Floats, ...]
     mesh: Mesh
     samples: Samples
     surface: Surface | None
+    own_samples: Samples
+    own_surface: Surface | None
 
     @property
     def nodes(self) -> int:
@@ -102,24 +107,49 @@ def largest_element_m(conductor: Conductor, frequency_hz: float) -> float:
     return min(half_m / ELEMENTS_PER_HALF, wavelength_m / ELEMENTS_PER_WAVELENGTH)
 
 
-def pieces_of(wires: Wires, frequency_hz: float, options: Options) -> tuple[tuple[Piece, ...], Mode]:
-    """All conductors meshed for frequencies up to the given one [Hz]."""
-    mode = choose_mode(wires, frequency_hz, options)
-    gap_m = least_surface_gap_m(wires)
-    pieces = []
-    for conductor in wires.conductors:
-        largest_m = largest_element_m(conductor, frequency_hz)
-        if mode.families:
-            largest_m = max(min(largest_m, 0.75 * gap_m), largest_m / FINEST_FACTOR)
-        pieces.append(piece_of(conductor, plan_nodes(conductor, largest_m, options.refinement), mode))
-    return tuple(pieces), mode
+@dataclass(frozen=True)
+class Planner:
+    """How the conductors of one antenna are meshed: the same rule for a conductor and for one that differs a little."""
+
+    frequency_hz: float
+    options: Options
+    mode: Mode
+    gap_m: dict[str, float]
+    spacing_m: dict[str, float]
+
+    def parts(self, conductor: Conductor) -> tuple[Floats, ...]:
+        """Node fractions for a conductor."""
+        largest_m = largest_element_m(conductor, self.frequency_hz)
+        if self.mode.families:
+            largest_m = max(min(largest_m, 0.75 * min(self.gap_m.values())), largest_m / FINEST_FACTOR)
+        return plan_nodes(conductor, largest_m, self.options.refinement)
+
+    def piece(self, conductor: Conductor) -> Piece:
+        """A conductor meshed."""
+        return self._piece_of(conductor, self.parts(conductor))
+
+    def changed(self, piece: Piece, conductor: Conductor) -> Piece:
+        """A slightly changed conductor on a mesh with as many nodes as the piece it comes from."""
+        parts = self.parts(conductor)
+        same = len(parts) == len(piece.parts) and all(
+            len(a) == len(b) for a, b in zip(parts, piece.parts, strict=True)
+        )
+        return self._piece_of(conductor, parts if same else piece.parts)
+
+    def _piece_of(self, conductor: Conductor, parts: tuple[Floats, ...]) -> Piece:
+        mesh, mode = build(conductor, parts), self.mode
+        samples = sample(mesh, self.spacing_m[conductor.tag])
+        skin = surface(mesh, mode.azimuths, mode.families, self.gap_m[conductor.tag]) if mode.families else None
+        if isinstance(conductor, Rod):
+            return Piece(conductor, parts, mesh, samples, skin, samples, skin)
+        own_skin = surface(mesh, mode.azimuths, mode.families) if mode.families else None
+        return Piece(conductor, parts, mesh, samples, skin, sample(mesh), own_skin)
 
 
-def piece_of(conductor: Conductor, parts: tuple[Floats, ...], mode: Mode) -> Piece:
-    """A conductor with given node fractions: the same ones for one that differs in size only."""
-    mesh = build(conductor, parts)
-    skin = surface(mesh, mode.azimuths, mode.families) if mode.families else None
-    return Piece(conductor, parts, mesh, sample(mesh), skin)
+def planner_of(wires: Wires, frequency_hz: float, options: Options) -> Planner:
+    """The rule that meshes an antenna for frequencies up to the given one [Hz]."""
+    spacing_m, gap_m = nearest_others(wires)
+    return Planner(frequency_hz, options, choose_mode(wires, frequency_hz, options), gap_m, spacing_m)
 
 
 def offsets(pieces: tuple[Piece, ...]) -> tuple[int, ...]:

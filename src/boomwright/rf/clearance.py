@@ -57,9 +57,15 @@ def least_spacing_radii(wires: Wires) -> float:
     return min((distance / max(a, b) for _, _, distance, a, b in spacings(wires)), default=math.inf)
 
 
-def least_surface_gap_m(wires: Wires) -> float:
-    """Least distance between the surfaces of two conductors [m]; infinite for a lone rod."""
-    return min((distance - a - b for _, _, distance, a, b in spacings(wires)), default=math.inf)
+def nearest_others(wires: Wires) -> tuple[dict[str, float], dict[str, float]]:
+    """For each tag the least distance to another conductor [m], axis to axis and surface to surface; inf for a lone one."""
+    axes = {conductor.tag: math.inf for conductor in wires.conductors}
+    surfaces = dict(axes)
+    for first, second, distance_m, a, b in spacings(wires):
+        for tag in (first, second) if first != second else ():
+            axes[tag] = min(axes[tag], distance_m)
+            surfaces[tag] = min(surfaces[tag], distance_m - a - b)
+    return axes, surfaces
 
 
 def refuse_impossible(wires: Wires) -> None:

@@ -5,6 +5,7 @@ Thin conductors use the average in closed form (`kernels.averaged_kernel`).
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -13,12 +14,14 @@ import numpy as np
 from boomwright.rf.arrays import Complexes, Floats, Integers
 from boomwright.rf.kernels import averaged_kernel
 from boomwright.rf.mesh import Mesh, rings
-from boomwright.rf.quadrature import gauss_unit
+from boomwright.rf.quadrature import gauss_unit, interpolation
 
 MIRROR_SIGNS = (-1.0, 1.0, -1.0)
 """Signs of the x, y and z components of a current's mirror image in y = 0; its charge changes sign."""
 
-SMALL_ELEMENT = 0.35
+PLACES_DECAY = 11.0
+LEAST_PLACES = 2
+EVERY_POINT = 1_000_000
 
 
 @dataclass(frozen=True)
@@ -43,15 +46,9 @@ class Samples:
 
 
 def quadrature_points(mesh: Mesh) -> tuple[Integers, Floats, Floats]:
-    """Element, place and weight of every sample: two an element, one on elements small beside the largest."""
-    size = mesh.size_m
-    small = size < SMALL_ELEMENT * size.max()
+    """Element, place and weight of two samples an element, (2 N,) each."""
     places, weights = gauss_unit(2)
-    index = np.arange(mesh.elements)
-    element = np.concatenate([index[small], np.repeat(index[~small], 2)])
-    place = np.concatenate([np.full(small.sum(), 0.5), np.tile(places, (~small).sum())])
-    weight = np.concatenate([np.ones(small.sum()), np.tile(weights, (~small).sum())])
-    return element, place, weight
+    return np.repeat(np.arange(mesh.elements), 2), np.tile(places, mesh.elements), np.tile(weights, mesh.elements)
 
 
 def hat_values(mesh: Mesh, element: Integers, place: Floats) -> tuple[Floats, Floats]:
@@ -65,17 +62,78 @@ def hat_values(mesh: Mesh, element: Integers, place: Floats) -> tuple[Floats, Fl
     return value[:keep], slope[:keep]
 
 
-def sample(mesh: Mesh) -> Samples:
-    """Samples of a thin conductor (harmonic m = 0); the radial current of end faces has no mean moment."""
+@dataclass(frozen=True)
+class Places:
+    """Where a conductor is sampled: element and place on it (Q,), and the share of every fine point in each (F, Q)."""
+
+    element: Integers
+    place: Floats
+    shares: Floats
+
+
+def sampling_places(mesh: Mesh, nearest_m: float) -> Places:
+    """Few enough places for the distance [m] of the nearest other conductor (0: every quadrature point).
+
+    Along a straight run the field of another conductor is smooth: it is sampled at Gauss points of the whole run, as
+    many as a singularity at that distance asks for, and interpolated to the elements.
+    """
+    element, place, _ = quadrature_points(mesh)
+    elements, places, shares = [], [], []
+    for first, last in straight_runs(mesh):
+        inside = np.flatnonzero((element >= first) & (element < last))
+        ends = np.concatenate([[0.0], np.cumsum(mesh.size_m[first:last])])
+        count = places_needed(ends[-1], nearest_m)
+        part = np.zeros((len(element), min(count, len(inside))))
+        if count < len(inside):
+            coarse = gauss_unit(count)[0] * ends[-1]
+            fine = ends[element[inside] - first] + place[inside] * mesh.size_m[element[inside]]
+            part[inside] = interpolation(coarse, fine)
+            owner = np.clip(np.searchsorted(ends, coarse, side="right") - 1, 0, last - first - 1)
+            elements.append(owner + first)
+            places.append((coarse - ends[owner]) / mesh.size_m[owner + first])
+        else:
+            part[inside, np.arange(len(inside))] = 1.0
+            elements.append(element[inside])
+            places.append(place[inside])
+        shares.append(part)
+    return Places(np.concatenate(elements), np.concatenate(places), np.concatenate(shares, axis=1))
+
+
+def straight_runs(mesh: Mesh) -> list[tuple[int, int]]:
+    """First and one past the last element of every straight run; each element of a bend is a run of its own."""
+    bent, cap = mesh.bend_rad_m != 0.0, mesh.cap
+    same_radius = mesh.radius_m[1:, 0] == mesh.radius_m[:-1, 0]
+    same_direction = (mesh.tangent[1:] * mesh.tangent[:-1]).sum(axis=1) > 1.0 - 1e-12
+    together = (cap[1:] == cap[:-1]) & ~bent[1:] & ~bent[:-1] & same_direction & (cap[1:] | same_radius)
+    starts = [0, *(int(i) + 1 for i in np.flatnonzero(~together))]
+    return list(zip(starts, [*starts[1:], mesh.elements], strict=True))
+
+
+def places_needed(length_m: float, nearest_m: float) -> int:
+    """Gauss points on a run of a length [m] that resolve a singularity at a distance [m] from it."""
+    if nearest_m <= 0.0:
+        return EVERY_POINT
+    reach = 4.0 * nearest_m / length_m if math.isfinite(nearest_m) else 1e3
+    decay = math.asinh(min(reach, 1e3))
+    return math.ceil(PLACES_DECAY / decay) + LEAST_PLACES
+
+
+def sample(mesh: Mesh, nearest_m: float = 0.0) -> Samples:
+    """Samples of a thin conductor (harmonic m = 0) for others at least `nearest_m` away; 0 = all quadrature points.
+
+    The radial current of end faces has no mean moment.
+    """
     element, place, weight = quadrature_points(mesh)
     value, slope = hat_values(mesh, element, place)
-    at = rings(mesh, element, place)
-    length = value * (weight * mesh.travel_m[element])
+    chosen = sampling_places(mesh, nearest_m)
+    at = rings(mesh, chosen.element, chosen.place)
+    length = (value * (weight * mesh.travel_m[element])) @ chosen.shares
     moments: list[Floats | None] = []
     for axis in range(3):
         component = length * at.tangent[:, axis]
         moments.append(component if component.any() else None)
-    return Samples(at.centre, at.tangent, at.radius_m, (moments[0], moments[1], moments[2]), slope * weight)
+    current = (moments[0], moments[1], moments[2])
+    return Samples(at.centre, at.tangent, at.radius_m, current, (slope * weight) @ chosen.shares)
 
 
 def mirrored(samples: Samples) -> tuple[Floats, Floats]:

@@ -73,7 +73,7 @@ def own_action(piece: Piece, mode: Mode) -> OwnAction | RingAction:
     """The integrals of one conductor with itself, ready for any frequency."""
     if isinstance(piece.conductor, Rod):
         return OwnAction(piece.mesh, azimuthal=mode.families > 0)
-    return RingAction(piece.mesh, piece.samples, piece.surface, mode.families)
+    return RingAction(piece.mesh, piece.own_samples, piece.own_surface, mode.families)
 
 
 def own_block(piece: Piece, action: OwnAction | RingAction, frequency_hz: float, mode: Mode) -> Complexes:
@@ -124,7 +124,9 @@ def _add_loss(total: Complexes, piece: Piece, frequency_hz: float) -> None:
     places, weights = gauss_unit(6)
     hats = np.array([1.0 - places, places])
     radius = mesh.radius_m[:, :1] + (mesh.radius_m[:, 1:] - mesh.radius_m[:, :1]) * places
-    along = np.array([round_impedance_ohm_m(float(a), sigma, frequency_hz) for a in mesh.radius_m[:, 0]])
+    sizes, which = np.unique(mesh.radius_m[~mesh.cap, 0], return_inverse=True)
+    along = np.zeros(mesh.elements, dtype=np.complex128)
+    along[~mesh.cap] = np.array([round_impedance_ohm_m(float(a), sigma, frequency_hz) for a in sizes])[which]
     per_length = np.where(mesh.cap[:, None], flat / (2.0 * math.pi * radius), along[:, None])
     weighted = 2.0 * per_length * weights * mesh.size_m[:, None]
     _add_nodal(total, piece, 0, np.einsum("eq,iq,jq->eij", weighted, hats, hats))

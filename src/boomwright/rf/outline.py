@@ -69,15 +69,24 @@ def facing_m(conductor: Folded | Loop) -> float:
     return conductor.length_m / math.pi if conductor.shape == "circle" else _side_m(conductor)
 
 
+def _axis_bend_m(folded: Folded) -> float:
+    other_m = folded.radius_m if folded.other_radius_m is None else folded.other_radius_m
+    half_m = folded.spacing_m / 2.0
+    return half_m if folded.bend_radius_m is None else min(folded.bend_radius_m + other_m, half_m)
+
+
+def is_half_circle(folded: Folded) -> bool:
+    """True if the two bends of an end make one half circle."""
+    return folded.spacing_m - 2.0 * _axis_bend_m(folded) <= 1e-9 * folded.spacing_m
+
+
 def _folded(folded: Folded) -> Outline:
     other_m = folded.radius_m if folded.other_radius_m is None else folded.other_radius_m
-    bend_m = folded.spacing_m / 2.0
-    if folded.bend_radius_m is not None:
-        bend_m = min(folded.bend_radius_m + other_m, bend_m)
+    bend_m = _axis_bend_m(folded)
     straight_m = folded.length_m / 2.0 - other_m - bend_m
     across_m = folded.spacing_m - 2.0 * bend_m
     quarter = Stretch(bend_m * math.pi / 2.0, math.pi / 2.0, other_m)
-    end = [Stretch(across_m, 0.0, other_m)] if across_m > 1e-9 * folded.spacing_m else []
+    end = [] if is_half_circle(folded) else [Stretch(across_m, 0.0, other_m)]
     fed, second = Stretch(straight_m, 0.0, folded.radius_m), Stretch(straight_m, 0.0, other_m)
     normal = (0.0, 0.0, 1.0) if folded.upright else (1.0, 0.0, 0.0)
     return Outline((folded.at_m, 0.0, folded.height_m), normal, (fed, quarter, *end, quarter, second))

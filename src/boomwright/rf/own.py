@@ -14,7 +14,7 @@ import numpy as np
 from boomwright.rf.arrays import Complexes, Floats, Integers, Numbers
 from boomwright.rf.kernels import dynamic_ring_kernels, static_ring_kernels
 from boomwright.rf.mesh import Mesh, Rings, rings
-from boomwright.rf.quadrature import PairRule, corner_rule, from_start, self_rule, smooth_rule, swapped
+from boomwright.rf.quadrature import PairRule, corner_rule, from_start, self_rule, smooth_rule
 
 FAR_SIZES = 1.5
 AZIMUTHS_PLAIN = 2
@@ -68,9 +68,9 @@ class Moments:
 def pair_sets(mesh: Mesh, wanted: np.ndarray[tuple[int, ...], np.dtype[np.bool_]]) -> list[PairSet]:
     """Pairs of elements with the rule each needs.
 
-    wanted  (2, E, E): which pairs to take, direct and mirrored
+    wanted  (2, E, E): which pairs to take, direct and mirrored; symmetric
 
-    Returns sets that together hold every wanted pair once.
+    Returns sets that together hold every wanted pair once, the first element never behind the second.
     """
     count = mesh.elements
     index = np.arange(count)
@@ -93,9 +93,8 @@ def pair_sets(mesh: Mesh, wanted: np.ndarray[tuple[int, ...], np.dtype[np.bool_]
             sets += [
                 PairSet(index, index, False, self_rule()),
                 PairSet(index[:-1], index[1:], False, corner_rule()),
-                PairSet(index[1:], index[:-1], False, swapped(corner_rule())),
             ]
-        rest = take & ~touching
+        rest = np.triu(take & ~touching)
         far = gap > FAR_SIZES * size
         for mask, rule in ((rest & far, smooth_rule(2)), (rest & ~far, smooth_rule(5))):
             first, second = np.nonzero(mask)
@@ -140,29 +139,42 @@ class PairGeometry:
         cosines = (first.tangent * second.tangent).sum(axis=-1)
         self.axial = (along[pairs.first] * along[pairs.second])[:, None] * cosines
         self.radial = sign * (outward[pairs.first] * outward[pairs.second])[:, None]
-        self.outward = sign * outward[pairs.first][:, None]
+        self.outward = sign * outward[pairs.first][:, None], sign * outward[pairs.second][:, None]
         self.weights = pairs.rule.moments()
 
     def add_to(self, total: dict[str, Numbers], harmonics: Harmonics) -> None:
-        """Add the integrals of these kernels (pairs, points) to the totals by name."""
+        """Add the integrals of these kernels (pairs, points), and those of the exchanged pairs, to the totals by name."""
         g0, g1, g2 = harmonics
-        where = (self.pairs.first, self.pairs.second)
-        area = self.size[0] * self.size[1]
+        area = (self.size[0] * self.size[1])[:, None]
         hats, constant = self.weights[:4].T, self.weights[4]
-        current = (self.axial * g0 + self.radial * g1) @ hats
-        total["current0"][where] += area[:, None, None] * current.reshape(-1, 2, 2)
-        total["charge0"][where] += self.sign * (g0 @ constant)
+        self._put(total["current0"], area * ((self.axial * g0 + self.radial * g1) @ hats))
+        self._put(total["charge0"], self.sign * (g0 @ constant))
         if "current1" not in total:
             return
         even, odd = (g0 + g2) / 2.0, (g0 - g2) / 2.0
-        current = 0.5 * (self.axial * g1 + self.radial * even) @ hats
-        total["current1"][where] += area[:, None, None] * current.reshape(-1, 2, 2)
-        total["charge1"][where] += 0.5 * self.sign * (g1 @ constant)
+        self._put(total["current1"], 0.5 * area * ((self.axial * g1 + self.radial * even) @ hats))
+        self._put(total["charge1"], 0.5 * self.sign * (g1 @ constant))
         around = self.radius_m * self.source_radius_m * even
-        total["around1"][where] += 0.5 * self.sign * area * (around @ constant)
-        first_hat = np.array([1.0 - self.pairs.rule.first, self.pairs.rule.first]) * self.pairs.rule.weight
-        mixed = -0.5 * (self.outward * self.source_radius_m * odd) @ first_hat.T
-        total["mixed1"][where] += area[:, None] * mixed
+        self._put(total["around1"], 0.5 * self.sign * area[:, 0] * (around @ constant))
+        rule, where = self.pairs.rule, (self.pairs.first, self.pairs.second)
+        first_hat = np.array([1.0 - rule.first, rule.first]) * rule.weight
+        second_hat = np.array([1.0 - rule.second, rule.second]) * rule.weight
+        total["mixed1"][where] += -0.5 * area * ((self.outward[0] * self.source_radius_m * odd) @ first_hat.T)
+        apart = where[0] != where[1]
+        exchanged = -0.5 * area * ((self.outward[1] * self.radius_m * odd) @ second_hat.T)
+        total["mixed1"][where[1][apart], where[0][apart]] += exchanged[apart]
+
+    def _put(self, total: Numbers, values: Numbers) -> None:
+        """Add values (pairs,) or (pairs, 4) at the pairs, and transposed at the exchanged pairs."""
+        first, second = self.pairs.first, self.pairs.second
+        apart = first != second
+        if values.ndim == 1:
+            total[first, second] += values
+            total[second[apart], first[apart]] += values[apart]
+            return
+        square = values.reshape(-1, 2, 2)
+        total[first, second] += square
+        total[second[apart], first[apart]] += square[apart].transpose(0, 2, 1)
 
 
 def _continued(source: Rings) -> Rings:
@@ -203,7 +215,7 @@ class OwnAction:
         if self._smooth is None:
             self._smooth = []
             for mirrored in (False, True):
-                first, second = np.nonzero(self.wanted[int(mirrored)])
+                first, second = np.nonzero(np.triu(self.wanted[int(mirrored)]))
                 self._smooth.append(PairGeometry(self.mesh, PairSet(first, second, mirrored, smooth_rule(2))))
         total = _empty(self.mesh.elements, self.azimuthal, complex)
         azimuths = AZIMUTHS_FULL if self.azimuthal else AZIMUTHS_PLAIN

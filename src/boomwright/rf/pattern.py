@@ -228,3 +228,26 @@ def _summit(level: Floats) -> int:
             break
         place = best
     return place % 360
+
+
+def pattern_vector(piece: Piece, direction: Floats, wavenumber_rad_m: float) -> Complexes:
+    """Radiation moment toward a unit vector (3,) that 1 A in each unknown of a piece makes, (U, 3) [m]."""
+    vector = np.zeros((piece.unknowns, 3), dtype=np.complex128)
+    k, surface = wavenumber_rad_m, piece.surface
+    for parity, flip in ((np.array([-1.0, 1.0, -1.0]), -1.0), (np.ones(3), 1.0)):
+        toward = direction * np.array([1.0, flip, 1.0])
+        if surface is None:
+            samples = piece.samples
+            across = 1.0 - (samples.tangent @ toward) ** 2
+            wave = np.exp(1j * k * samples.centre @ toward) * (1.0 - (k * samples.radius_m) ** 2 / 4.0 * across)
+            for axis, values in enumerate(samples.current):
+                if values is not None:
+                    vector[:, axis] += parity[axis] * (values @ wave)
+            continue
+        functions = azimuth_functions(surface.azimuths)
+        waves = np.exp(1j * k * surface.points() @ toward) @ functions.T
+        for axis, terms in enumerate(surface.current):
+            for term in terms:
+                rows = slice(term.row, term.row + len(term.values))
+                vector[rows, axis] += parity[axis] * (term.values @ waves[:, term.function])
+    return vector

@@ -77,11 +77,24 @@ def corner_rule(radial_count: int = 10, across_count: int = 5) -> PairRule:
     )
 
 
-def swapped(rule: PairRule) -> PairRule:
-    """The same rule with the elements' roles exchanged."""
-    return PairRule(rule.second, rule.first, rule.weight)
-
-
 def from_start(rule: PairRule) -> PairRule:
     """The corner rule for two elements that both start at the shared node (mirror images of each other)."""
     return PairRule(1.0 - rule.first, rule.second, rule.weight)
+
+
+def interpolation(nodes: Floats, places: Floats) -> Floats:
+    """Values of the Lagrange polynomials of `nodes` (N,) at `places` (P,), (P, N), in barycentric form.
+
+    The nodes are those of a Gauss or Chebyshev rule, where the interpolation is stable [Berrut2004].
+    """
+    away = nodes[:, None] - nodes[None, :]
+    np.fill_diagonal(away, 1.0)
+    span = np.abs(away).max()
+    weights = 1.0 / np.prod(away * (4.0 / span), axis=1)
+    gap = places[:, None] - nodes[None, :]
+    exact = np.abs(gap) < 1e-13 * span
+    shares = weights / np.where(exact, 1.0, gap)
+    shares /= shares.sum(axis=1, keepdims=True)
+    hit = exact.any(axis=1)
+    shares[hit] = exact[hit]
+    return shares

@@ -11,7 +11,7 @@ from scipy.linalg import lapack
 
 from boomwright.errors import DesignFault, Fault
 from boomwright.rf.arrays import Complexes, Floats, wavenumber_rad_m
-from boomwright.rf.basis import Mode, Options, Piece, offsets, pieces_of
+from boomwright.rf.basis import Mode, Options, Piece, offsets, planner_of
 from boomwright.rf.clearance import refuse_impossible
 from boomwright.rf.conductors import Wires
 from boomwright.rf.feed import excitation
@@ -185,17 +185,18 @@ class Model:
         refuse_impossible(wires)
         refuse_frequencies((highest_frequency_hz,))
         self.wires = wires
-        self.pieces, self.mode = pieces_of(wires, highest_frequency_hz, options or Options())
+        self.planner = planner_of(wires, highest_frequency_hz, options or Options())
+        self.mode = self.planner.mode
+        self.pieces = tuple(self.planner.piece(conductor) for conductor in wires.conductors)
         self.impedance = Impedance(self.pieces, self.mode)
         self.excitation = excitation(self.pieces)
 
     def solve(self, frequency_hz: float) -> Solution:
         """The antenna at one frequency [Hz]."""
-        return self.solve_matrix(self.impedance.matrix(frequency_hz), frequency_hz)
+        return self.solution(factored(self.impedance.matrix(frequency_hz)).solve(self.excitation), frequency_hz)
 
-    def solve_matrix(self, matrix: Complexes, frequency_hz: float) -> Solution:
-        """The antenna from its matrix (U, U) [ohm] at a frequency [Hz]."""
-        currents = factored(matrix).solve(self.excitation)
+    def solution(self, currents: Complexes, frequency_hz: float) -> Solution:
+        """What follows from the unknowns (U,) at a frequency [Hz]."""
         lost_w = 0.0
         for row, piece, lossy in zip(offsets(self.pieces), self.pieces, self.impedance.lossy, strict=False):
             if lossy:
