@@ -1,4 +1,4 @@
-"""Designs from 145 MHz to 5.8 GHz that tests of several rooms share. Invented figures: shapes to build, not antennas."""
+"""Designs that tests of several rooms share. Invented figures: shapes to build, not antennas to use."""
 
 from dataclasses import replace
 

@@ -1,6 +1,5 @@
 """The output folder: swapped in at the end, or nothing changed."""
 
-import os
 import signal
 import subprocess
 import sys
@@ -113,9 +112,9 @@ def test_second_run_at_one_target_is_refused_clearly(tmp_path: Path) -> None:
     with subprocess.Popen(command, stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True) as other:
         assert other.stdout is not None
         assert other.stdout.readline() == "ready\n"
-        with pytest.raises(AccessError, match=r"another run is writing .*beam: wait until it has ended"):
-            with fresh_folder(target):
-                raise AssertionError("two runs at one target")
+        message = r"another run is writing .*beam: wait until it has ended"
+        with pytest.raises(AccessError, match=message), fresh_folder(target):
+            raise AssertionError("two runs at one target")
         other.communicate("\n")
     assert (target / MARKER).read_text() == "held"
     assert litter(tmp_path) == []
@@ -170,4 +169,4 @@ def test_place_that_cannot_be_written_is_an_access_error(tmp_path: Path) -> None
     blocked.write_text("not a folder")
     with pytest.raises(AccessError, match="cannot write"), fresh_folder(blocked / "beam"):
         pass
-    assert os.listdir(tmp_path) == ["file"]
+    assert [p.name for p in tmp_path.iterdir()] == ["file"]
