@@ -6,7 +6,6 @@ one of the offsets, and nowhere else. Coordinates in millimetres.
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -24,6 +23,12 @@ MATCHED_MM = 0.01
 
 EDGE_MM = 0.02
 """Samples keep this far from a face's edge, where chords of its rim may cut in."""
+
+CORNER_REACH = 6.0
+"""A sharp corner between two moved faces runs ahead of them, by up to this many times their move."""
+
+MOST_MOVES = 3
+"""None, by the growth, by half the shrink."""
 
 Indices = NDArray[np.int64]
 
@@ -74,7 +79,7 @@ class Match:
         starts = low[order, 0]
         points = np.concatenate([corners, corners.mean(axis=1, keepdims=True)], axis=1)
         best = np.full(len(corners), np.inf)
-        margin = 2.0 * self._offsets.largest_mm
+        margin = CORNER_REACH * self._offsets.largest_mm
         # Analytic surfaces first: the others cost a projection a point, and are asked only for what is left.
         for face in sorted(self._faces, key=lambda f: f.kind == "general"):
             floor, ceiling = face.low - margin - REACH_MM, face.high + margin + REACH_MM
@@ -124,32 +129,39 @@ class Match:
         """The farthest sample of the solid's surface from the triangles that stand for its face [mm]."""
         _ = self._residual
         margin = EDGE_MM + 2.0 * self._offsets.largest_mm
-        return max((self._uncovered(face, at) for face, at in self._sampled(margin)), default=0.0)
+        drawn = [(face, samples(face, margin)) for face in self._faces]
+        points = np.concatenate([at.points for _, at in drawn])
+        if len(points) == 0:
+            return 0.0
+        outward = np.concatenate([at.outward for _, at in drawn])
+        moves = np.concatenate([self._columns(face, at.outward) for face, at in drawn])
+        first = np.cumsum([0] + [len(at.points) for _, at in drawn])
+        pairs = [self._pairs(face, at, start) for (face, at), start in zip(drawn, first[:-1], strict=True)]
+        sample, triangle = np.concatenate(pairs, axis=1)
+        apart = closest_on_triangles(points[sample], self._corners[triangle]) - points[sample]
+        along = np.einsum("ij,ij->i", apart, outward[sample])
+        aside = np.linalg.norm(apart - along[:, None] * outward[sample], axis=1)
+        off = np.abs(along[:, None] + moves[sample]).min(axis=1)
+        worst = np.full(len(points), np.inf)
+        np.minimum.at(worst, sample, np.hypot(aside, off))
+        for index in np.flatnonzero(np.isinf(worst)):
+            worst[index] = self._to_mesh(points[index])
+        return float(worst.max())
 
-    def _sampled(self, margin_mm: float) -> Iterator[tuple[FaceView, Beside]]:
-        for face in self._faces:
-            at = samples(face, margin_mm)
-            if len(at.points):
-                yield face, at
+    def _columns(self, face: FaceView, outward: Vector) -> Vector:
+        """The moves a face's samples may show, shape (n, MOST_MOVES); the first, none, again where there are fewer."""
+        columns = self._offsets.moves(face, outward)
+        return np.stack(columns + columns[:1] * (MOST_MOVES - len(columns)), axis=1)
 
-    def _uncovered(self, face: FaceView, at: Beside) -> float:
-        """Worst distance of a face's samples from its own triangles [mm]."""
-        triangles = self._corners[self._stand_ins[id(face)]]
+    def _pairs(self, face: FaceView, at: Beside, first: int) -> Indices:
+        """Samples of a face, counted from `first`, and the triangles near them that stand for it; shape (2, k)."""
+        triangles = self._stand_ins[id(face)]
+        corners = self._corners[triangles]
         reach = self._offsets.largest_mm + 2.0 * MATCHED_MM
-        low, high = triangles.min(axis=1) - reach, triangles.max(axis=1) + reach
+        low, high = corners.min(axis=1) - reach, corners.max(axis=1) + reach
         near = np.all((at.points[:, None] >= low) & (at.points[:, None] <= high), axis=2)
         sample, triangle = np.nonzero(near)
-        worst = np.full(len(at.points), np.inf)
-        if sample.size:
-            apart = closest_on_triangles(at.points[sample], triangles[triangle]) - at.points[sample]
-            along = np.einsum("ij,ij->i", apart, at.outward[sample])
-            aside = np.linalg.norm(apart - along[:, None] * at.outward[sample], axis=1)
-            moves = self._offsets.moves(face, at.outward[sample])
-            off = np.min([np.abs(along + move) for move in moves], axis=0)
-            np.minimum.at(worst, sample, np.hypot(aside, off))
-        for index in np.flatnonzero(np.isinf(worst)):
-            worst[index] = self._to_mesh(at.points[index])
-        return float(worst.max())
+        return np.stack([sample + first, triangles[triangle]])
 
     def _to_mesh(self, point: Vector) -> float:
         """Distance of a point from the whole mesh [mm], at least MATCHED_MM x 2: nothing stands for its face there."""

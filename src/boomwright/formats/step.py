@@ -39,7 +39,7 @@ class Step(Format):
         return isinstance(piece, SolidPiece)
 
     def write(self, piece: Piece, path: Path) -> None:
-        """The nominal bodies, moved into the file's frame; one body alone, several as an assembly."""
+        """The nominal bodies, moved into the file's frame, as an assembly."""
         assert isinstance(piece, SolidPiece)
         placed = [(body, place(body.shape, piece.frame)) for body in piece.bodies]
         _transfer(piece.stem, placed, path)
@@ -130,14 +130,12 @@ def _document(title: str, placed: Sequence[tuple[Body, Any]]) -> Any:
     document = TDocStd_Document(TCollection_ExtendedString("BinXCAF"))
     XCAFApp_Application.GetApplication_s().InitDocument(document)
     tool = XCAFDoc_DocumentTool.ShapeTool_s(document.Main())
-    whole = tool.NewShape() if len(placed) > 1 else None
-    if whole is not None:
-        call(whole, title)
+    whole = tool.NewShape()
+    call(whole, title)
     for body, shape in placed:
         label = tool.AddShape(shape, False)
         call(label, body.name)
-        if whole is not None:
-            call(tool.AddComponent(whole, label, TopLoc_Location()), body.name)
+        call(tool.AddComponent(whole, label, TopLoc_Location()), body.name)
     tool.UpdateAssemblies()
     return document
 
@@ -151,7 +149,9 @@ def _numbered_anew(text: str) -> str:
 def _with_styles(text: str, colours: Sequence[tuple[float, float, float]]) -> str:
     """The file with one colour a body, in the bodies' order."""
     breps = set(re.findall(r"#(\d+) = (?:MANIFOLD_SOLID_BREP|BREP_WITH_VOIDS)\(", text))
-    shapes = re.findall(r"ADVANCED_BREP_SHAPE_REPRESENTATION\('[^']*',\s*\(([#\d,\s]*)\),\s*#(\d+)\s*\)", text)
+    # A body of several solids is a plain representation; so is the assembly, which holds no solid of its own.
+    form = r"= (?:ADVANCED_BREP_)?SHAPE_REPRESENTATION\('[^']*',\s*\(([#\d,\s]*)\),\s*#(\d+)\s*\)"
+    shapes = [found for found in re.findall(form, text) if breps.intersection(re.findall(r"\d+", found[0]))]
     head, end, tail = text.rpartition("ENDSEC;")
     free = count(1 + max(int(number) for number in re.findall(r"^#(\d+) =", text, re.MULTILINE)))
     lines = []

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from typing import Any
 
@@ -9,8 +10,11 @@ import numpy as np
 
 from boomwright.formats.brep import FaceView, Vector
 
-GRIDS = (4, 11, 31)
-"""Samples a side of the parameter square; finer ones only where no coarse one falls inside the face."""
+GRIDS = (2, 9)
+"""Least samples a side of the parameter square; finer ones only where no coarse one falls inside the face."""
+
+SAMPLE_EVERY_MM = 15.0
+MOST_SAMPLES = 12
 
 
 @dataclass(frozen=True)
@@ -100,25 +104,32 @@ def samples(face: FaceView, margin_mm: float) -> Beside:
     from OCP.gp import gp_Pnt2d
     from OCP.TopAbs import TopAbs_IN
 
-    bounds = BRepTools.UVBounds_s(face.face)
+    empty = Beside(np.zeros((0, 3)), np.zeros(0), np.zeros((0, 3)))
+    if np.sort(face.high - face.low)[1] <= 2.0 * margin_mm:
+        return empty
+    low_u, high_u, low_v, high_v = BRepTools.UVBounds_s(face.face)
     surface, domain = BRepAdaptor_Surface(face.face, False), BRepTopAdaptor_FClass2d(face.face, 1e-7)
+    _, du, dv = _derivatives(surface, (low_u + high_u) / 2.0, (low_v + high_v) / 2.0)
+    long_u, long_v = (max(1e-9, math.hypot(*along)) for along in (du, dv))
+    step_u, step_v = margin_mm / long_u, margin_mm / long_v
 
     def inside(u: float, v: float) -> bool:
-        return bool(domain.Perform(gp_Pnt2d(u, v)) == TopAbs_IN)
+        around = ((u, v), (u - step_u, v), (u + step_u, v), (u, v - step_v), (u, v + step_v))
+        return all(domain.Perform(gp_Pnt2d(*at)) == TopAbs_IN for at in around)
 
-    found = []
     for grid in GRIDS:
-        parts = (np.arange(grid) + 0.5) / grid
-        for u in (bounds[0] + (bounds[1] - bounds[0]) * parts).tolist():
-            for v in (bounds[2] + (bounds[3] - bounds[2]) * parts).tolist():
-                if not inside(u, v):
-                    continue
-                point, du, dv = _derivatives(surface, u, v)
-                step_u = margin_mm / max(1e-9, float(np.linalg.norm(du)))
-                step_v = margin_mm / max(1e-9, float(np.linalg.norm(dv)))
-                if all(inside(*at) for at in ((u - step_u, v), (u + step_u, v), (u, v - step_v), (u, v + step_v))):
-                    found.append((point, _normal(face, surface, u, v)))
+        us = _spread(low_u, high_u, grid, long_u)
+        vs = _spread(low_v, high_v, grid, long_v)
+        found = [(u, v) for u in us for v in vs if inside(u, v)]
         if found:
-            break
-    points = np.array([point for point, _ in found]).reshape(-1, 3)
-    return Beside(points, np.zeros(len(points)), np.array([normal for _, normal in found]).reshape(-1, 3))
+            points = np.array([_derivatives(surface, u, v)[0] for u, v in found])
+            if face.kind != "general":
+                return beside(face, points)
+            return Beside(points, np.zeros(len(points)), np.array([_normal(face, surface, u, v) for u, v in found]))
+    return empty
+
+
+def _spread(low: float, high: float, fewest: int, mm_per_unit: float) -> list[float]:
+    """Middles of equal parts of a parameter's range: at least `fewest`, more on a long side."""
+    count = max(fewest, min(MOST_SAMPLES, math.ceil((high - low) * mm_per_unit / SAMPLE_EVERY_MM)))
+    return [low + (high - low) * (i + 0.5) / count for i in range(count)]
