@@ -58,7 +58,7 @@ class Surface:
 
 def azimuth_angles(count: int) -> Floats:
     """Evenly spread azimuths [rad], symmetric about 0, (count,)."""
-    return (np.arange(count) + 0.5) * (2.0 * np.pi / count)
+    return np.linspace(0.0, 2.0 * np.pi, count, endpoint=False) + np.pi / count
 
 
 def azimuth_functions(count: int, half: bool = False) -> Floats:
@@ -189,9 +189,7 @@ def _contracted(waves: Complexes, weights: tuple[Floats, Floats]) -> Complexes:
     return result
 
 
-def _add(
-    total: Complexes, left: tuple[Term, ...], kernels: Complexes, right: tuple[Term, ...], scale: float
-) -> None:
+def _add(total: Complexes, left: tuple[Term, ...], kernels: Complexes, right: tuple[Term, ...], scale: float) -> None:
     """Add scale * left @ kernel @ right.T, term by term, to the block."""
     for one in left:
         for two in right:

@@ -131,9 +131,7 @@ class Planner:
     def changed(self, piece: Piece, conductor: Conductor) -> Piece:
         """A slightly changed conductor on a mesh with as many nodes as the piece it comes from."""
         parts = self.parts(conductor)
-        same = len(parts) == len(piece.parts) and all(
-            len(a) == len(b) for a, b in zip(parts, piece.parts, strict=True)
-        )
+        same = len(parts) == len(piece.parts) and all(len(a) == len(b) for a, b in zip(parts, piece.parts, strict=True))
         return self._piece_of(conductor, parts if same else piece.parts)
 
     def _piece_of(self, conductor: Conductor, parts: tuple[Floats, ...]) -> Piece:

@@ -58,7 +58,7 @@ def least_spacing_radii(wires: Wires) -> float:
 
 
 def nearest_others(wires: Wires) -> tuple[dict[str, float], dict[str, float]]:
-    """For each tag the least distance to another conductor [m], axis to axis and surface to surface; inf for a lone one."""
+    """For each tag the least distance to another conductor [m], of axes and of surfaces; infinite for a lone one."""
     axes = {conductor.tag: math.inf for conductor in wires.conductors}
     surfaces = dict(axes)
     for first, second, distance_m, a, b in spacings(wires):
@@ -69,16 +69,13 @@ def nearest_others(wires: Wires) -> tuple[dict[str, float], dict[str, float]]:
 
 
 def refuse_impossible(wires: Wires) -> None:
-    """Raise DesignFault for conductors that touch, cross, lie inside one another or cannot exist; all faults at once."""
+    """Raise DesignFault, with all faults, for conductors that touch, cross, lie inside one another or cannot exist."""
     faults = [fault for conductor in wires.conductors for fault in _own_faults(conductor)]
     if not faults:
         for first, second, distance_m, a, b in spacings(wires):
             if distance_m <= a + b:
-                what = (
-                    f"{first} and {second} touch: axes {distance_m * 1e3:.3f} mm apart, radii {(a + b) * 1e3:.3f} mm together"
-                    if first != second
-                    else f"the two sides of {first} touch: axes {distance_m * 1e3:.3f} mm apart"
-                )
+                names = f"{first} and {second} touch" if first != second else f"the two sides of {first} touch"
+                what = f"{names}: axes {distance_m * 1e3:.3f} mm apart, radii {(a + b) * 1e3:.3f} mm together"
                 faults.append(Fault(first, what, "move them apart or make them thinner"))
     fed = [conductor.tag for conductor in wires.conductors if conductor.gap_m > 0.0]
     if len(fed) != 1:

@@ -49,7 +49,6 @@ class Impedance:
                 total[columns, rows] = part.T
         return total
 
-
     def dissipation(self, piece: Piece, frequency_hz: float) -> Complexes:
         """What loss and coat add to a piece's own block [ohm], (U, U); its real part takes power."""
         total = np.zeros((piece.unknowns, piece.unknowns), dtype=np.complex128)
@@ -132,8 +131,8 @@ def _add_loss(total: Complexes, piece: Piece, frequency_hz: float) -> None:
     _add_nodal(total, piece, 0, np.einsum("eq,iq,jq->eij", weighted, hats, hats))
     count = mesh.elements
     for row in _families(piece):
-        weighted = 2.0 * flat / (4.0 * math.pi * radius) * weights * mesh.size_m[:, None]
-        _add_nodal(total, piece, row, np.einsum("eq,iq,jq->eij", weighted, hats, hats))
+        varying = 2.0 * flat / (4.0 * math.pi * radius) * weights * mesh.size_m[:, None]
+        _add_nodal(total, piece, row, np.einsum("eq,iq,jq->eij", varying, hats, hats))
         elements = row + piece.nodes + np.arange(count)
         total[elements, elements] += 2.0 * flat * (radius @ weights) * mesh.size_m / (4.0 * math.pi)
 

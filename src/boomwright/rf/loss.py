@@ -36,5 +36,6 @@ def round_impedance_ohm_m(radius_m: float, conductivity_s_m: float, frequency_hz
         return 0j
     growth = (1.0 + 1.0j) / skin_depth_m(conductivity_s_m, frequency_hz)
     argument = growth * radius_m
-    ratio = complex(np.asarray(ive(0, argument) / ive(1, argument)).item())
+    bessel = np.asarray(ive(np.array([0.0, 1.0]), np.full(2, argument)), dtype=np.complex128)
+    ratio = complex(bessel[0] / bessel[1])
     return growth * ratio / (2.0 * math.pi * radius_m * conductivity_s_m)

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 
@@ -53,7 +54,8 @@ class Mesh:
     @property
     def cap(self) -> np.ndarray[tuple[int, ...], np.dtype[np.bool_]]:
         """True for the elements of the end face, (N,)."""
-        return self.travel_m == 0.0
+        face: np.ndarray[tuple[int, ...], np.dtype[np.bool_]] = self.travel_m == 0.0
+        return face
 
 
 @dataclass(frozen=True)
@@ -178,7 +180,7 @@ def _ring(conductor: Folded | Loop, parts: tuple[Floats, ...]) -> Mesh:
         pieces[:1] = [(gap_m, turn_rad * opening, radius_m), (length_m - gap_m, turn_rad * (1.0 - opening), radius_m)]
     for (length_m, turn_rad, radius_m), fractions in zip(pieces, parts, strict=True):
         curvature = turn_rad / length_m
-        for low, high in zip(fractions[:-1], fractions[1:], strict=True):
+        for low, high in pairwise(fractions):
             step = (high - low) * length_m
             angle = curvature * step
             t = np.cos(heading) * forward + np.sin(heading) * aside

@@ -143,7 +143,7 @@ class PairGeometry:
         self.weights = pairs.rule.moments()
 
     def add_to(self, total: dict[str, Numbers], harmonics: Harmonics) -> None:
-        """Add the integrals of these kernels (pairs, points), and those of the exchanged pairs, to the totals by name."""
+        """Add the integrals of these kernels (pairs, points), exchanged pairs too, to the totals by name."""
         g0, g1, g2 = harmonics
         area = (self.size[0] * self.size[1])[:, None]
         hats, constant = self.weights[:4].T, self.weights[4]

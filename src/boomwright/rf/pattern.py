@@ -163,7 +163,7 @@ def sphere(sources: Sources, wavenumber_rad_m: float, flat: bool = False) -> Sph
     points, weights = np.polynomial.legendre.leggauss(rises)
     rise, weight = (points + 1.0) / 2.0, weights
     step = 2.0 * np.pi / angles
-    angle = np.arange(angles // 2 + 1 if flat else angles) * step
+    angle = np.linspace(0.0, 2.0 * np.pi, angles, endpoint=False)[: angles // 2 + 1 if flat else None]
     share = np.full(len(angle), step)
     if flat:
         share[1:-1] *= 2.0
@@ -181,11 +181,14 @@ def cut_intensity_w_sr(sources: Sources, plane: str, wavenumber_rad_m: float) ->
     degrees = np.arange(360)
     if plane == "h":
         rise, angle = np.zeros(1), np.radians(degrees)
-        return intensity_w_sr(grid_moments(sources, rise, angle, k), grid_directions(rise, angle), k)[0]
+        ring: Floats = intensity_w_sr(grid_moments(sources, rise, angle, k), grid_directions(rise, angle), k)[0]
+        return ring
     rise, angle = np.sin(np.radians(np.arange(91))), np.array([0.0, np.pi])
     quarter = intensity_w_sr(grid_moments(sources, rise, angle, k), grid_directions(rise, angle), k)
     folded = np.minimum(degrees, 360 - degrees)
-    result: Floats = np.where(folded <= 90, quarter[np.minimum(folded, 90), 0], quarter[np.minimum(180 - folded, 90), 1])
+    result: Floats = np.where(
+        folded <= 90, quarter[np.minimum(folded, 90), 0], quarter[np.minimum(180 - folded, 90), 1]
+    )
     return result
 
 

@@ -97,4 +97,5 @@ def interpolation(nodes: Floats, places: Floats) -> Floats:
     shares /= shares.sum(axis=1, keepdims=True)
     hit = exact.any(axis=1)
     shares[hit] = exact[hit]
-    return shares
+    result: Floats = shares
+    return result

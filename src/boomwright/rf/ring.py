@@ -1,4 +1,4 @@
-"""A closed conductor's action on itself: neighbours along the chord, facing sides closely sampled, the rest by rings."""
+"""A closed conductor's action on itself: neighbours along the chord, facing sides closely, the rest by rings."""
 
 from __future__ import annotations
 

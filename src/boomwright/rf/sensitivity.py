@@ -1,7 +1,7 @@
 """First-order sensitivities by the adjoint method: one factorisation serves every dimension of every conductor.
 
-For a stationary quantity a^T I with Z I = e and Z a' = a the change is -a'^T dZ I. Only the blocks of the conductor that
-changes enter dZ; they are filled again with its dimension a little larger and a little smaller on the same mesh.
+For a stationary quantity a^T I with Z I = e and Z a' = a the change is -a'^T dZ I. Only the blocks of the changed
+conductor enter dZ; they are filled again with its dimension a little larger and a little smaller on the same mesh.
 """
 
 from __future__ import annotations
