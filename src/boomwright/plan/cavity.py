@@ -1,0 +1,174 @@
+"""The hollow of a mould: a block drafted both ways, and the resin it takes by arithmetic. No solid is asked.
+
+`pull` is the coordinate along which the halves are drawn off (z, or x), `across` the other one of x and z.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from itertools import pairwise
+from typing import Literal
+
+import numpy as np
+from numpy.typing import NDArray
+
+from boomwright.design.centreline import Point, Run
+from boomwright.design.model import Section
+from boomwright.plan.seat import Groove
+
+Span = tuple[float, float]
+Pull = Literal["x", "z"]
+Array = NDArray[np.float64]
+
+ROWS, COLUMNS = 1200, 400
+"""Strips along the pull and points across it of the integral over the boom: good to 1e-4 of the boom's volume."""
+
+STEPS_PER_RUN = 20_000
+"""Points along one run of a conductor: a step of 0.05 mm on a run of a metre."""
+
+
+@dataclass(frozen=True)
+class Taper:
+    """A span [mm] that is widest at one place along the pull and narrows both ways by the draft."""
+
+    span_mm: Span
+    widest_mm: float
+
+    def at(self, pull_mm: float, slope: float) -> Span:
+        """The span at a place along the pull; `slope` is the tangent of the draft."""
+        less = slope * abs(pull_mm - self.widest_mm)
+        return self.span_mm[0] + less, self.span_mm[1] - less
+
+    def outline(self, pull_mm: Span, slope: float, growth_mm: float = 0.0) -> tuple[tuple[float, float], ...]:
+        """Corners (across, pull) [mm] between two places along the pull, every side moved out by `growth_mm`."""
+        places = [pull_mm[0], *([self.widest_mm] if pull_mm[0] < self.widest_mm < pull_mm[1] else []), pull_mm[1]]
+        spans = [self.at(place, slope) for place in places]
+        right = [(span[1] + growth_mm, place) for span, place in zip(spans, places, strict=True)]
+        left = [(span[0] - growth_mm, place) for span, place in zip(spans, places, strict=True)]
+        return (*right, *reversed(left))
+
+
+@dataclass(frozen=True)
+class Cavity:
+    """The hollow: where both tapers hold, over a depth along the pull [mm]. `slope` is the tangent of the draft."""
+
+    pull: Pull
+    across: Taper
+    along: Taper
+    depth_mm: Span
+    slope: float
+
+    @property
+    def box_mm(self) -> tuple[Span, Span, Span]:
+        """The least box round it in x, y and z [mm]."""
+        across, depth = self.across.span_mm, self.depth_mm
+        x, z = (depth, across) if self.pull == "x" else (across, depth)
+        return x, self.along.span_mm, z
+
+    def holds(self, points_mm: Array) -> NDArray[np.bool_]:
+        """Which of the points (n, 3) [mm] lie inside."""
+        pull, across = (0, 2) if self.pull == "x" else (2, 0)
+        depth = points_mm[:, pull]
+        inside = (depth >= self.depth_mm[0]) & (depth <= self.depth_mm[1])
+        for taper, axis in ((self.across, across), (self.along, 1)):
+            less = self.slope * np.abs(depth - taper.widest_mm)
+            inside &= points_mm[:, axis] >= taper.span_mm[0] + less
+            inside &= points_mm[:, axis] <= taper.span_mm[1] - less
+        return inside
+
+    def volume_mm3(self) -> float:
+        """Volume of the empty hollow [mm³]: the section is quadratic between the bends, so Simpson's rule is exact."""
+        bends = {self.across.widest_mm, self.along.widest_mm}
+        places = [self.depth_mm[0], *sorted(b for b in bends if self.depth_mm[0] < b < self.depth_mm[1])]
+        total = 0.0
+        for low, high in pairwise([*places, self.depth_mm[1]]):
+            middle = self._section_mm2((low + high) / 2.0)
+            total += (high - low) / 6.0 * (self._section_mm2(low) + 4.0 * middle + self._section_mm2(high))
+        return total
+
+    def _section_mm2(self, pull_mm: float) -> float:
+        across, along = self.across.at(pull_mm, self.slope), self.along.at(pull_mm, self.slope)
+        return (across[1] - across[0]) * (along[1] - along[0])
+
+
+@dataclass(frozen=True)
+class BoomBar:
+    """What of the boom matters inside the mould: its section, size and ends [mm], and the grooves across it."""
+
+    section: Section
+    half_mm: float
+    axis_mm: float
+    ends_mm: Span
+    grooves: tuple[Groove, ...]
+
+
+def boom_mm3(cavity: Cavity, boom: BoomBar) -> float:
+    """Volume of the boom in the cavity [mm³], grooves and pockets left out: the resin fills them. A tube counts as full."""
+    low, high = cavity.depth_mm
+    pulls = low + (np.arange(ROWS) + 0.5) * (high - low) / ROWS
+    less = cavity.slope * np.abs(pulls - cavity.across.widest_mm)
+    first, last = cavity.across.span_mm[0] + less, cavity.across.span_mm[1] - less
+    shares = (np.arange(COLUMNS) + 0.5) / COLUMNS
+    across = first[:, None] + (last - first)[:, None] * shares
+    pull = np.broadcast_to(pulls[:, None], across.shape)
+    x, z = (pull, across) if cavity.pull == "x" else (across, pull)
+    cells = (last - first) / COLUMNS * (high - low) / ROWS
+    return float((_kept_width_mm(boom, x, z) * cells[:, None]).sum())
+
+
+def _kept_width_mm(boom: BoomBar, x: Array, z: Array) -> Array:
+    """Width in y of the boom's material along the lines through (x, z) [mm]."""
+    off = np.abs(z - boom.axis_mm)
+    if boom.section == "round":
+        width = 2.0 * np.sqrt(np.maximum(boom.half_mm**2 - off**2, 0.0))
+    else:
+        width = np.where(off <= boom.half_mm, 2.0 * boom.half_mm, 0.0)
+    width = np.where((x >= boom.ends_mm[0]) & (x <= boom.ends_mm[1]), width, 0.0)
+    for groove in boom.grooves:
+        from_axis = np.abs(x - groove.at_mm)
+        round_bottom = -np.sqrt(np.maximum(groove.radius_mm**2 - from_axis**2, 0.0))
+        width = np.where((from_axis <= groove.radius_mm) & (z >= round_bottom), 0.0, width)
+        if groove.pocket is not None:
+            pocketed = (from_axis <= groove.pocket.half_x_mm) & (z >= -groove.radius_mm)
+            width = np.where(pocketed, np.maximum(width - 2.0 * groove.pocket.half_y_mm, 0.0), width)
+    return width
+
+
+def wire_mm3(cavity: Cavity, runs: Sequence[Run], radius_mm: float) -> float:
+    """Volume of a round conductor in the cavity [mm³]: its section times the length of its centreline inside."""
+    inside_mm = 0.0
+    for run in runs:
+        inside_mm += run.length_mm * float(cavity.holds(points_along(run, STEPS_PER_RUN)).mean())
+    return math.pi * radius_mm**2 * inside_mm
+
+
+def points_along(run: Run, count: int) -> Array:
+    """`count` points evenly along a run, each in the middle of its step: (count, 3) [mm]."""
+    shares = (np.arange(count) + 0.5) / count
+    return places_along(run, shares)
+
+
+def places_along(run: Run, shares: Array) -> Array:
+    """Points at these shares (0 to 1) of a run's length: (n, 3) [mm]."""
+    start, end = np.array(run.start), np.array(run.end)
+    if run.middle is None:
+        return start + shares[:, None] * (end - start)
+    centre, first = _centre(run), start - _centre(run)
+    normal = np.cross(first, np.array(run.middle) - centre)
+    second = np.cross(normal / np.linalg.norm(normal), first)
+    angles = shares[:, None] * run.angle_rad
+    return centre + np.cos(angles) * first + np.sin(angles) * second
+
+
+def _centre(run: Run) -> Array:
+    """Centre of an arc: on the line from the chord's middle through the arc's middle, one radius behind the latter."""
+    start, middle, end = np.array(run.start), np.array(run.middle), np.array(run.end)
+    toward = middle - (start + end) / 2.0
+    return np.asarray(middle - run.radius_mm * toward / np.linalg.norm(toward))
+
+
+def straight(start: Point, end: Point) -> Run:
+    """A straight run between two points [mm]."""
+    return Run(start, end)
