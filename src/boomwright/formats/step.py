@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from contextlib import contextmanager
 from itertools import count
 from pathlib import Path
 from typing import Any
@@ -43,9 +44,8 @@ class Step(Format):
         assert isinstance(piece, SolidPiece)
         placed = [(body, place(body.shape, piece.frame)) for body in piece.bodies]
         _transfer(piece.stem, placed, path)
-        text = path.read_text("latin-1")
-        colours = [body.colour for body in piece.bodies]
-        path.write_text(_with_styles(_numbered_anew(text), colours), "latin-1", newline="\n")
+        text = _numbered_anew(_in_ascii(path.read_text("utf-8")))
+        path.write_text(_with_styles(text, [body.colour for body in piece.bodies]), "ascii", newline="\n")
 
     def read(self, path: Path) -> StepReading:
         """Every body with its name and colour, in the file's order."""
@@ -140,6 +140,11 @@ def _document(title: str, placed: Sequence[tuple[Body, Any]]) -> Any:
     return document
 
 
+def _in_ascii(text: str) -> str:
+    """Letters beyond ASCII as ISO 10303-21 wants them, in hexadecimal."""
+    return re.sub(r"[^\x00-\x7f]+", lambda found: f"\\X2\\{found[0].encode('utf-16-be').hex().upper()}\\X0\\", text)
+
+
 def _numbered_anew(text: str) -> str:
     """Occurrence ids from 1: the kernel's counter runs on through the process."""
     number = count(1)
@@ -192,7 +197,8 @@ def _read_bodies(path: Path) -> list[ReadBody]:
     document = TDocStd_Document(TCollection_ExtendedString("BinXCAF"))
     XCAFApp_Application.GetApplication_s().InitDocument(document)
     try:
-        done = reader.ReadFile(str(path)) == IFSelect_RetDone and reader.Transfer(document)
+        with _quiet_kernel():
+            done = reader.ReadFile(str(path)) == IFSelect_RetDone and reader.Transfer(document)
     except Exception as error:  # the kernel's own exceptions have no common base worth naming
         raise MeasureError(f"{path.name}: not a readable STEP file ({error})") from error
     if not done:
@@ -207,8 +213,24 @@ def _read_bodies(path: Path) -> list[ReadBody]:
     return found
 
 
+@contextmanager
+def _quiet_kernel() -> Iterator[None]:
+    """The kernel prints its complaints on stdout, where only results belong; its printers are put back afterwards."""
+    from OCP.Message import Message
+
+    messenger = Message.DefaultMessenger_s()
+    printers = list(messenger.Printers())
+    for printer in printers:
+        messenger.RemovePrinter(printer)
+    try:
+        yield
+    finally:
+        for printer in printers:
+            messenger.AddPrinter(printer)
+
+
 def _refuse_junk(path: Path) -> None:
-    """Keep what is plainly no STEP file away from the kernel, which prints its complaints."""
+    """Keep what is plainly no STEP file away from the kernel."""
     try:
         data = path.read_bytes()
     except OSError as error:

@@ -1,0 +1,32 @@
+"""The same bytes in another process, whatever was written before and however memory lies."""
+
+import os
+import subprocess
+import sys
+from pathlib import Path
+
+from specimens import TABLE, antenna_piece, drawing_piece, rail_piece, write
+
+SCRIPT = """
+import sys
+from pathlib import Path
+sys.path.insert(0, sys.argv[1])
+ballast = [object() for _ in range(100_003)]
+from specimens import TABLE, antenna_piece, drawing_piece, rail_piece, write
+for piece in (antenna_piece(100.0), TABLE, drawing_piece(), rail_piece(), antenna_piece()):
+    write(piece, Path(sys.argv[2]))
+"""
+
+
+def test_two_processes_write_the_same_bytes(tmp_path):
+    (here := tmp_path / "here").mkdir()
+    (there := tmp_path / "there").mkdir()
+    for piece in (rail_piece(), antenna_piece(), drawing_piece(), TABLE):
+        write(piece, here)
+    environment = os.environ | {"PYTHONHASHSEED": "11", "TZ": "Asia/Tokyo"}
+    command = [sys.executable, "-c", SCRIPT, str(Path(__file__).parent), str(there)]
+    subprocess.run(command, check=True, env=environment, timeout=120)
+    names = sorted(path.name for path in here.iterdir())
+    assert names == ["antenna.step", "comb-1.dxf", "cut-list.csv", "rail-1.3mf", "rail-1.step", "rail-1.stl"]
+    for name in names:
+        assert (here / name).read_bytes() == (there / name).read_bytes(), name
