@@ -16,6 +16,8 @@ from boomwright.errors import MeasureError
 from boomwright.formats import conductors
 from boomwright.formats.brep import FaceView, ReadBody, StepReading, Vector, exact_box, volume_mm3
 
+__all__ = ["MEASURES", "TOUCH_MM3", "extent_of", "overrun_of", "volume_mm3"]
+
 Arguments = Mapping[str, Any]
 
 TOUCH_MM3 = 1e-6

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import csv
 import io
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
@@ -77,7 +78,7 @@ def _cell(reading: CsvReading, arguments: Mapping[str, Any]) -> float:
     if column not in reading.columns or not 0 <= row < len(reading.rows):
         raise MeasureError(f"{reading.path.name}: no cell in row {row} of column {column!r}")
     text = reading.rows[row][reading.columns.index(column)]
-    if not _is_number(text):
+    if not _is_number(text) or not math.isfinite(float(text)):
         raise MeasureError(f"{reading.path.name}: {text!r} in row {row} of column {column!r} is not a number")
     return float(text)
 

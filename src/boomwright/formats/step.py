@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import Any
 
 from boomwright.errors import AccessError, CatalogueError, MeasureError
-from boomwright.formats import bodies, notches
+from boomwright.formats import bodies, notches, release
 from boomwright.formats.brep import ReadBody, StepReading
 from boomwright.formats.format import FileEntry, Format
 from boomwright.pieces import Body, Expectation, Matrix, Piece, Probe, SolidPiece
@@ -25,7 +25,7 @@ LOWEST_ALLOWED_MM = 1e-3
 """How far from the bed a part in print orientation may start."""
 
 Measure = Callable[[Any, Mapping[str, Any], Sequence[Any]], float]
-MEASURES: dict[str, Measure] = {**bodies.MEASURES, **notches.BODY_MEASURES}
+MEASURES: dict[str, Measure] = {**bodies.MEASURES, **notches.BODY_MEASURES, **release.MEASURES}
 
 
 class Step(Format):
@@ -125,7 +125,7 @@ def _document(title: str, placed: Sequence[tuple[Body, Any]]) -> Any:
     from OCP.XCAFDoc import XCAFDoc_DocumentTool
 
     def call(label: Any, name: str) -> None:
-        TDataStd_Name.Set_s(label, TCollection_ExtendedString(name))
+        TDataStd_Name.Set_s(label, TCollection_ExtendedString(name, True))
 
     document = TDocStd_Document(TCollection_ExtendedString("BinXCAF"))
     XCAFApp_Application.GetApplication_s().InitDocument(document)
