@@ -74,6 +74,28 @@ def make(
 
 
 @app.command()
+def predict(
+    design: Annotated[Path, typer.Argument(help="The design file (TOML).")],
+    *,
+    at_mhz: Annotated[list[float] | None, typer.Option(help="Only this frequency in MHz (may be repeated).")] = None,
+    points: Annotated[int | None, typer.Option(help="Number of frequencies of the sweep; absent = 61.")] = None,
+    as_json: AsJson = False,
+    quiet: Quiet = False,
+) -> None:
+    """Solve the antenna: impedance, gain, front-to-back and beamwidths over the band, and its spec judged."""
+    from boomwright.prediction import predict_file
+
+    found = predict_file(design, at_mhz or (), points)
+    if as_json:
+        typer.echo(found.as_json(), nl=False)
+    elif not quiet:
+        typer.echo(found.as_text())
+    for shortfall in found.shortfalls:
+        typer.echo(f"not met: {shortfall}", err=True)
+    raise typer.Exit(NOT_MET if found.shortfalls else DONE)
+
+
+@app.command()
 def audit(
     folder: Annotated[Path, typer.Argument(metavar="DIR", help="A folder that make wrote.")],
     as_json: AsJson = False,
