@@ -49,7 +49,7 @@ def edit_stl(path, change):
 
 def found(printed, file=STL):
     folder, entries = printed
-    return {what: value for (name, what), value in judge(entries, folder).items() if name == file}
+    return {what: value for (_, what), value in judge([e for e in entries if e.path == file], folder).items()}
 
 
 def test_an_inch_scaled_stl(printed):
@@ -73,7 +73,7 @@ def test_an_stl_moved_by_a_twentieth(printed):
 
 
 @pytest.mark.parametrize("axis", [0, 1, 2])
-@pytest.mark.parametrize("corner", [0, 3, 11, 40])
+@pytest.mark.parametrize("corner", [0, 40])
 def test_one_moved_vertex(printed, axis, corner):
     def move(records):
         corners = records["corners"].copy()
@@ -138,7 +138,7 @@ def test_a_part_that_floats(printed):
 
 def faulty(tmp_path, solid):
     entries = write(rail_piece(printed=(Body("rail-1", solid),)), tmp_path)
-    return {what: value for (name, what), value in judge(entries, tmp_path).items() if name == STL}
+    return found((tmp_path, entries))
 
 
 def test_a_bore_left_out_of_the_mesh(tmp_path):
@@ -162,13 +162,13 @@ def test_a_hole_widened_twice(tmp_path):
 
 def test_an_offset_that_the_manifest_does_not_list(tmp_path):
     entries = write(rail_piece(offsets={}), tmp_path)
-    wrong = {what: value for (name, what), value in judge(entries, tmp_path).items() if name == STL}
+    wrong = found((tmp_path, entries))
     assert wrong["distance from the STEP"] == pytest.approx(0.12, abs=1e-3)
 
 
 def test_an_offset_that_is_not_the_shops(tmp_path):
     entries = write(rail_piece(Printer(outline_growth_mm=0.2, hole_shrink_mm=0.1)), tmp_path)
-    wrong = {what: value for (name, what), value in judge(entries, tmp_path).items() if name == STL}
+    wrong = found((tmp_path, entries))
     assert wrong["distance from the STEP"] == pytest.approx(0.08, abs=1e-3)
 
 

@@ -1,4 +1,4 @@
-"""What every format offers: the pieces it takes, a writer, a reader, measures, and the rules any file of it must meet."""
+"""What every format offers: the pieces it takes, a writer, a reader, measures, the rules any file of it must meet."""
 
 from __future__ import annotations
 

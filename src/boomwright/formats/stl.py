@@ -9,7 +9,7 @@ from typing import Any
 import numpy as np
 
 from boomwright.errors import MeasureError
-from boomwright.formats import meshes
+from boomwright.formats import meshes, meshing
 from boomwright.formats.format import FileEntry, Format
 from boomwright.pieces import Expectation, Piece, Probe, SolidPiece
 from boomwright.shop.profile import Shop
@@ -32,7 +32,7 @@ class Stl(Format):
     def write(self, piece: Piece, path: Path) -> None:
         """Header with the part's name, triangle count, then normal and corners of each triangle."""
         assert isinstance(piece, SolidPiece)
-        mesh = meshes.mesh_piece(piece)
+        mesh = meshing.mesh_piece(piece)
         corners = mesh.vertices[mesh.triangles]
         records = np.zeros(len(corners), dtype=RECORD)
         records["corners"] = corners
@@ -54,7 +54,7 @@ class Stl(Format):
         corners = np.frombuffer(data, dtype=RECORD, offset=start)["corners"].reshape(-1, 3).astype(float)
         if not np.all(np.isfinite(corners)):
             raise MeasureError(f"{path.name}: holds coordinates that are not finite")
-        used, index = np.unique(meshes.first_alike(corners), return_inverse=True)
+        used, index = np.unique(meshing.first_alike(corners), return_inverse=True)
         return meshes.MeshReading(path, corners[used], index.reshape(-1, 3), None, "")
 
     def measure(self, reading: Any, probe: Probe, also: Sequence[Any]) -> float:

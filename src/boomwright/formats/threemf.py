@@ -13,7 +13,7 @@ from xml.sax.saxutils import quoteattr
 import numpy as np
 
 from boomwright.errors import MeasureError
-from boomwright.formats import meshes
+from boomwright.formats import meshes, meshing
 from boomwright.formats.format import FileEntry, Format
 from boomwright.pieces import Expectation, Piece, Probe, SolidPiece
 from boomwright.shop.profile import Shop
@@ -62,7 +62,7 @@ class ThreeMf(Format):
     def write(self, piece: Piece, path: Path) -> None:
         """One object, named like the piece."""
         assert isinstance(piece, SolidPiece)
-        model = _model(piece.stem, meshes.mesh_piece(piece))
+        model = _model(piece.stem, meshing.mesh_piece(piece))
         with zipfile.ZipFile(path, "w", zipfile.ZIP_DEFLATED, compresslevel=6) as archive:
             for name, text in (
                 ("[Content_Types].xml", CONTENT_TYPES),
@@ -114,7 +114,7 @@ class ThreeMf(Format):
         )
 
 
-def _model(name: str, mesh: meshes.Mesh) -> str:
+def _model(name: str, mesh: meshing.Mesh) -> str:
     # Nine digits bring every 32-bit number back exactly.
     vertices = "\n".join(f'<vertex x="{x:.9g}" y="{y:.9g}" z="{z:.9g}"/>' for x, y, z in mesh.vertices.tolist())
     triangles = "\n".join(f'<triangle v1="{a}" v2="{b}" v3="{c}"/>' for a, b, c in mesh.triangles.tolist())
