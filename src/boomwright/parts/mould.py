@@ -9,12 +9,12 @@ from __future__ import annotations
 import math
 from typing import TYPE_CHECKING, Any
 
+from boomwright.design.centreline import straight_half_mm
 from boomwright.parts.mould_halves import clip_shape, half_shape
 from boomwright.parts.palette import PRINTED
 from boomwright.pieces import Body, Expectation, Matrix, Part, Piece, Probe, SolidPiece
 from boomwright.plan.compensation import printer_offsets
 from boomwright.plan.mould import HALVES, Half, MouldPlan
-from boomwright.plan.mould_room import neighbours
 
 if TYPE_CHECKING:
     from boomwright.plan.plan import Plan
@@ -25,7 +25,6 @@ NOTHING_MM3 = 1e-6
 DRAFT_ALLOWED_DEG = 1e-3
 VOLUME_ALLOWED_SHARE = 0.01
 PLACE_ALLOWED_MM = 0.005
-WAYS: dict[Half, str] = {"upper": "upper", "lower": "lower"}
 
 
 class Mould(Part):
@@ -72,7 +71,7 @@ def _expect_half(plan: Plan, half: Half) -> list[Expectation]:
     pull = [math.copysign(1.0, move) if move else 0.0 for move in mould.legs[half][0]]
     cavity = {"frame": frame, "box": [list(corner) for corner in zip(*mould.cavity.box_mm, strict=True)]}
     draft = math.degrees(math.atan(mould.cavity.slope))
-    probe = Probe("draft_deg", cavity | {"pull": pull})
+    probe = Probe("draft_deg", cavity | {"pull": pull, "taper_mm": mould.cavity.taper_mm})
     found = [Expectation(file, f"{words} least draft", draft, DRAFT_ALLOWED_DEG, "deg", probe, "at_least")]
     sweep = {"frame": frame, "legs": mould.legs[half], "solids": _coax(mould)}
     what = f"{words} meets antenna or coax on its way off"
@@ -87,19 +86,19 @@ def _expect_half(plan: Plan, half: Half) -> list[Expectation]:
 
 
 def _expect_neighbours(plan: Plan, half: Half) -> list[Expectation]:
-    """The clearance to the nearest rod in front and behind, where the plan keeps one."""
-    mould, found = plan.mould, []
+    """The clearance in front and behind to the conductor next to the block, where the plan keeps one."""
+    mould, driven, found = plan.mould, plan.design.driven, []
     for place, behind in ((0, True), (1, False)):
-        gap = mould.ends.clearance_mm[place]
-        near = next(iter(neighbours(plan.design, behind)), None)
-        if gap is None or near is None or (mould.pull == "x" and behind == (half == "upper")):
+        near = mould.ends.neighbours[place]
+        if near is None or (mould.pull == "x" and behind == (half == "upper")):
             continue
-        rod = next(r for r in plan.design.rods if r.tag == near.tag)
-        r, y = rod.diameter_mm / 2.0, rod.length_mm / 2.0
-        box = _moved_box(mould.frame(half), ((rod.at_mm - r, -y, -r), (rod.at_mm + r, y, r)))
-        what = f"mould-{half} distance from {rod.tag}"
-        least = min(abs(near.surface_mm - mould.block[0][place]), gap)
+        rod = next((r for r in plan.design.rods if r.tag == near.tag), driven)
+        r, y = rod.diameter_mm / 2.0, straight_half_mm(driven) if rod is driven else (rod.length_mm or 0.0) / 2.0
+        inner, outer = sorted((near.surface_mm, near.surface_mm + 2.0 * r * (-1.0 if behind else 1.0)))
+        box = _moved_box(mould.frame(half), ((inner, -y, -r), (outer, y, r)))
+        least = abs(near.surface_mm - mould.block[0][place])
         probe = Probe("clearance_mm", {"box": box})
+        what = f"mould-{half} distance from {near.tag}"
         found.append(Expectation(_file(half), what, least, PLACE_ALLOWED_MM, "mm", probe, "at_least"))
     return found
 

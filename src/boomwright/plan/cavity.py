@@ -67,6 +67,12 @@ class Cavity:
         x, z = (depth, across) if self.pull == "x" else (across, depth)
         return x, self.along.span_mm, z
 
+    @property
+    def taper_mm(self) -> float:
+        """The most that the draft brings a side in from where it is widest [mm]."""
+        widest = (self.across.widest_mm, self.along.widest_mm)
+        return self.slope * max(abs(end - place) for end in self.depth_mm for place in widest)
+
     def holds(self, points_mm: Array) -> NDArray[np.bool_]:
         """Which of the points (n, 3) [mm] lie inside."""
         pull, across = (0, 2) if self.pull == "x" else (2, 0)

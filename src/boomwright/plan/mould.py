@@ -40,7 +40,7 @@ from boomwright.plan.mould_room import (
     joint_mm,
     neighbours,
 )
-from boomwright.plan.parting import PartingFace, PinRoom, lay_out_parting
+from boomwright.plan.parting import SOCKET_SPARE_MM, PartingFace, PinRoom, lay_out_parting
 from boomwright.plan.seat import SeatPlan
 from boomwright.plan.size import Size
 from boomwright.shop.profile import Shop
@@ -352,10 +352,11 @@ def _channels_seen_flat(ground: _Ground, wires: tuple[tuple[Run, ...], ...], coa
 
 
 def _pin_depth_mm(ground: _Ground, ends: Ends, z_mm: Span) -> float:
-    """How deep a socket may go [mm]."""
+    """How deep a socket may go [mm]: not through its half, and along x no farther than the pins clear the wires."""
     if pull_of(ground.driven) == "z":
         return z_mm[1] - ground.web_mm
-    return ends.block_mm[1] - ground.driven.at_mm - ground.web_mm
+    at, tube = ground.driven.at_mm, max(ground.radius_mm, ground.coax_mm)
+    return min(ends.block_mm[1] - at - ground.web_mm, at - ends.cavity_mm[0] - tube + SOCKET_SPARE_MM)
 
 
 def _openings(ground: _Ground, cavity: Cavity, ends: Ends, z_mm: Span) -> tuple[Opening, Opening]:

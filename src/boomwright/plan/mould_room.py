@@ -49,6 +49,7 @@ class Ends:
     resin_mm: Span
     wall_mm: Span
     clearance_mm: tuple[float | None, float | None]
+    neighbours: tuple[Neighbour | None, Neighbour | None]
     travel_mm: Span
     why: tuple[str, str]
 
@@ -162,6 +163,7 @@ class _Side:
     clearance_mm: float | None
     depth_mm: float
     why: str
+    neighbour: Neighbour | None
     fault: Fault | None = None
 
 
@@ -187,7 +189,7 @@ def _fit(room: MouldRoom, neighbour: Neighbour | None, axis_mm: float, sign: flo
     resin, wall, _ = sizes
     depth = _depth_mm(room, resin)
     gap = None if neighbour is None else abs(neighbour.surface_mm - axis_mm) - depth - wall
-    return _Side(resin, wall, gap, depth, "; ".join(why), fault)
+    return _Side(resin, wall, gap, depth, "; ".join(why), neighbour, fault)
 
 
 def _depth_mm(room: MouldRoom, resin_mm: float) -> float:
@@ -243,6 +245,7 @@ def _joined(room: MouldRoom, sides: list[_Side], axes_mm: Span) -> Ends:
         resin_mm=(rear.resin_mm, front.resin_mm),
         wall_mm=(rear.wall_mm, front.wall_mm),
         clearance_mm=(rear.clearance_mm, front.clearance_mm),
+        neighbours=(rear.neighbour, front.neighbour),
         travel_mm=travel,
         why=(rear.why, front.why),
     )
