@@ -9,17 +9,19 @@ import numpy as np
 
 from boomwright.rf.arrays import Floats, wavenumber_rad_m
 from boomwright.rf.azimuth import Surface, surface
-from boomwright.rf.clearance import least_spacing_radii, nearest_others
+from boomwright.rf.clearance import least_spacing_radii, least_surface_gap_m, nearest_others
 from boomwright.rf.conductors import Conductor, Folded, Loop, Rod, Wires
 from boomwright.rf.coupling import Samples, sample
 from boomwright.rf.mesh import Mesh, build, plan_nodes
-from boomwright.rf.outline import outline
+from boomwright.rf.outline import facing_m, outline
 
 ELEMENTS_PER_HALF = 16.0
 ELEMENTS_PER_WAVELENGTH = 48.0
 THICK_KA = 0.1
 CLOSE_RADII = 10.0
 FINEST_FACTOR = 3.0
+GAP_SHARE = 0.75
+FACING_SPACINGS = 14.0
 AZIMUTHS_LEAST, AZIMUTHS_MOST = 8, 20
 AZIMUTH_DECAY = 9.0
 
@@ -81,13 +83,26 @@ def choose_mode(wires: Wires, frequency_hz: float, options: Options) -> Mode:
     nearest = least_spacing_radii(wires)
     wanted = options.azimuthal
     if wanted is None:
-        wanted = nearest < CLOSE_RADII or any(k * conductor.radius_m > THICK_KA for conductor in wires.conductors)
+        thick = any(k * conductor.radius_m > THICK_KA for conductor in wires.conductors)
+        wanted = thick or (nearest < CLOSE_RADII and can_resolve(wires, frequency_hz))
     if not wanted:
         return Mode(0, 0)
     decay = math.acosh(max(nearest / 2.0, 1.05)) if math.isfinite(nearest) else 10.0
     azimuths = 2 * math.ceil(AZIMUTH_DECAY / decay / 2.0)
     azimuths = min(max(azimuths, AZIMUTHS_LEAST), AZIMUTHS_MOST)
     return Mode(1 if is_flat(wires) else 2, azimuths)
+
+
+def can_resolve(wires: Wires, frequency_hz: float) -> bool:
+    """True if elements as small as the gaps between surfaces are affordable.
+
+    Where they are not, conductors are a few radii apart and both far thinner than an element: facing sides of a folded
+    dipole then crowd the current as two long wires do (`proximity`).
+    """
+    gap_m = least_surface_gap_m(wires)
+    return all(
+        largest_element_m(conductor, frequency_hz) <= FINEST_FACTOR * GAP_SHARE * gap_m for conductor in wires.conductors
+    )
 
 
 def is_flat(wires: Wires) -> bool:
@@ -104,7 +119,8 @@ def largest_element_m(conductor: Conductor, frequency_hz: float) -> float:
     """Size of a conductor's elements away from ends, bends and feed [m]."""
     wavelength_m = 2.0 * math.pi / wavenumber_rad_m(frequency_hz)
     half_m = conductor.length_m / 2.0 if isinstance(conductor, Rod) else outline(conductor).length_m / 2.0
-    return min(half_m / ELEMENTS_PER_HALF, wavelength_m / ELEMENTS_PER_WAVELENGTH)
+    largest_m = min(half_m / ELEMENTS_PER_HALF, wavelength_m / ELEMENTS_PER_WAVELENGTH)
+    return largest_m if isinstance(conductor, Rod) else min(largest_m, FACING_SPACINGS * facing_m(conductor))
 
 
 @dataclass(frozen=True)
@@ -114,6 +130,7 @@ class Planner:
     frequency_hz: float
     options: Options
     mode: Mode
+    least_gap_m: float
     gap_m: dict[str, float]
     spacing_m: dict[str, float]
 
@@ -121,7 +138,7 @@ class Planner:
         """Node fractions for a conductor."""
         largest_m = largest_element_m(conductor, self.frequency_hz)
         if self.mode.families:
-            largest_m = max(min(largest_m, 0.75 * min(self.gap_m.values())), largest_m / FINEST_FACTOR)
+            largest_m = max(min(largest_m, GAP_SHARE * self.least_gap_m), largest_m / FINEST_FACTOR)
         return plan_nodes(conductor, largest_m, self.options.refinement)
 
     def piece(self, conductor: Conductor) -> Piece:
@@ -147,7 +164,8 @@ class Planner:
 def planner_of(wires: Wires, frequency_hz: float, options: Options) -> Planner:
     """The rule that meshes an antenna for frequencies up to the given one [Hz]."""
     spacing_m, gap_m = nearest_others(wires)
-    return Planner(frequency_hz, options, choose_mode(wires, frequency_hz, options), gap_m, spacing_m)
+    mode = choose_mode(wires, frequency_hz, options)
+    return Planner(frequency_hz, options, mode, least_surface_gap_m(wires), gap_m, spacing_m)
 
 
 def offsets(pieces: tuple[Piece, ...]) -> tuple[int, ...]:

@@ -57,6 +57,11 @@ def least_spacing_radii(wires: Wires) -> float:
     return min((distance / max(a, b) for _, _, distance, a, b in spacings(wires)), default=math.inf)
 
 
+def least_surface_gap_m(wires: Wires) -> float:
+    """Least distance between surfaces [m], facing sides of one conductor included; infinite for a lone rod."""
+    return min((distance - a - b for _, _, distance, a, b in spacings(wires)), default=math.inf)
+
+
 def nearest_others(wires: Wires) -> tuple[dict[str, float], dict[str, float]]:
     """For each tag the least distance to another conductor [m], of axes and of surfaces; infinite for a lone one."""
     axes = {conductor.tag: math.inf for conductor in wires.conductors}

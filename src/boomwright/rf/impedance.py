@@ -15,7 +15,7 @@ from boomwright.rf.arrays import WAVE_IMPEDANCE_OHM, Complexes, wavenumber_rad_m
 from boomwright.rf.azimuth import surface_coupling
 from boomwright.rf.basis import Mode, Piece, offsets
 from boomwright.rf.coat import coat_elastance_m_f
-from boomwright.rf.conductors import Rod
+from boomwright.rf.conductors import Folded, Rod
 from boomwright.rf.coupling import coupling
 from boomwright.rf.loss import round_impedance_ohm_m, surface_impedance_ohm
 from boomwright.rf.own import OwnAction, block
@@ -82,6 +82,8 @@ def own_block(piece: Piece, action: OwnAction | RingAction, frequency_hz: float,
         total = action.block(k)
     else:
         total = block(piece.mesh, action.static.plus(action.dynamic(k)), k, mode.families)
+    if isinstance(piece.conductor, Folded) and piece.surface is None:
+        _add_proximity(total, piece, piece.conductor, k)
     total *= factor_ohm_m(frequency_hz)
     _add_loss(total, piece, frequency_hz)
     _add_coat(total, piece, frequency_hz)
@@ -135,6 +137,24 @@ def _add_loss(total: Complexes, piece: Piece, frequency_hz: float) -> None:
         _add_nodal(total, piece, row, np.einsum("eq,iq,jq->eij", varying, hats, hats))
         elements = row + piece.nodes + np.arange(count)
         total[elements, elements] += 2.0 * flat * (radius @ weights) * mesh.size_m / (4.0 * math.pi)
+
+
+def _add_proximity(total: Complexes, piece: Piece, folded: Folded, wavenumber_rad_m: float) -> None:
+    """Add what the facing sides of a folded dipole do to one another beyond m = 0, as two long parallel wires do.
+
+    A wire of radius b at distance d from a line charge or current takes a dipole moment that lowers the line's own
+    potential as if its logarithm of distance over radius were less by (b / d)^2; the next term is its square.
+    """
+    mesh = piece.mesh
+    other_m = folded.radius_m if folded.other_radius_m is None else folded.other_radius_m
+    facing = (mesh.bend_rad_m == 0.0) & (np.abs(mesh.tangent[:, 1]) > 0.5)
+    second = mesh.tangent[:, 1] < 0.0
+    radius = np.where(second, folded.radius_m, other_m)
+    change = np.where(facing, -2.0 * (radius / folded.spacing_m) ** 2, 0.0)
+    hats, slopes = np.array([[2.0, 1.0], [1.0, 2.0]]) / 6.0, np.array([[1.0, -1.0], [-1.0, 1.0]])
+    size = mesh.size_m[:, None, None]
+    parts = change[:, None, None] * (size * hats - slopes / (size * wavenumber_rad_m**2))
+    _add_nodal(total, piece, 0, parts.astype(np.complex128))
 
 
 def _add_coat(total: Complexes, piece: Piece, frequency_hz: float) -> None:

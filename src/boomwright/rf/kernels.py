@@ -13,19 +13,21 @@ from scipy.special import ellipe, ellipkm1
 from boomwright.rf.arrays import Complexes, Floats
 
 SMALL_PARAMETER = 2e-3
+LEAST_COMPLEMENT = 1e-28
 
 
 def static_ring_kernels(axial_m: Floats, radius_m: Floats, source_radius_m: Floats) -> tuple[Floats, Floats, Floats]:
     """Azimuthal harmonics of 1/R between two rings on one axis.
 
-    axial_m          distance of the rings' planes [m]; not 0 where the radii agree
+    axial_m          distance of the rings' planes [m]
     radius_m         radius of the first ring [m], above 0, broadcastable
     source_radius_m  radius of the second ring [m], above 0, broadcastable
 
     Returns g0, g1, g2 [1/m]: the means of cos(m psi) / R over psi for m = 0, 1, 2.
     """
     squared = (radius_m + source_radius_m) ** 2 + axial_m**2
-    complement = ((radius_m - source_radius_m) ** 2 + axial_m**2) / squared
+    # Points of a rule may come closer than the coordinates' last digit; their weight is as small.
+    complement = np.maximum(((radius_m - source_radius_m) ** 2 + axial_m**2) / squared, LEAST_COMPLEMENT)
     parameter = 1.0 - complement
     root = 2.0 / (np.pi * np.sqrt(squared))
     first = ellipkm1(complement)

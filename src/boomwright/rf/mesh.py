@@ -90,10 +90,11 @@ def graded_nodes(length_m: float, largest_m: float, first_m: float, last_m: floa
 
     Each refinement halves every element in the measure of the grading.
     """
-    place = np.linspace(0.0, length_m, 2001)
+    rise = np.geomspace(0.01 * min(first_m, last_m, length_m), length_m / 2.0, 400)
+    place = np.concatenate([[0.0], rise, length_m - rise[-2::-1], [length_m]])
     size = np.minimum(largest_m, np.minimum(first_m + GROWTH * place, last_m + GROWTH * (length_m - place)))
     density = 1.0 / size
-    count = np.concatenate([[0.0], np.cumsum((density[1:] + density[:-1]) / 2.0)]) * (place[1] - place[0])
+    count = np.concatenate([[0.0], np.cumsum((density[1:] + density[:-1]) / 2.0 * np.diff(place))])
     wanted = max(1, math.ceil(count[-1] - 1e-9)) * 2**refinement
     nodes: Floats = np.interp(np.linspace(0.0, count[-1], wanted + 1), count, place)
     nodes[0], nodes[-1] = 0.0, length_m

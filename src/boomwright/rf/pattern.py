@@ -12,7 +12,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from boomwright.rf.arrays import WAVE_IMPEDANCE_OHM, Complexes, Floats
+from boomwright.rf.arrays import WAVE_IMPEDANCE_OHM, Complexes, Floats, Integers
 from boomwright.rf.azimuth import azimuth_functions
 from boomwright.rf.basis import Piece, offsets
 
@@ -93,28 +93,36 @@ def grid_moments(sources: Sources, rise: Floats, angle_rad: Floats, wavenumber_r
     """
     k = wavenumber_rad_m
     place = sources.place
-    columns, group = np.unique(np.round(place[:, [0, 2]], 12), axis=0, return_inverse=True)
-    gather = np.zeros((len(place), len(columns)))
-    gather[np.arange(len(place)), group.ravel()] = 1.0
-    aside = k * np.outer(rise, place[:, 1])
-    even, odd = 2.0 * np.cos(aside), 2j * np.sin(aside)
-    if sources.radius_m.any():
-        # Rings across the direction's plane round y: exact for rods, whose axis is y; for others the mean of both.
-        across = 1.0 - (np.outer(rise, sources.tangent[:, 1])) ** 2
-        across -= (1.0 - rise[:, None] ** 2) * (1.0 - sources.tangent[:, 1] ** 2) / 2.0
-        mean = 1.0 - (k * sources.radius_m) ** 2 / 4.0 * across
-        even, odd = even * mean, odd * mean
+    columns, column = np.unique(np.round(place[:, [0, 2]], 12), axis=0, return_inverse=True)
+    heights, height = np.unique(np.round(place[:, 1], 12), return_inverse=True)
+    cell = height.ravel() * len(columns) + column.ravel()
+    aside = k * np.outer(rise, heights)
+    even, odd = 2.0 * np.cos(aside) + 0j, 2j * np.sin(aside)
     flat = np.sqrt(np.maximum(1.0 - rise**2, 0.0))
     spoke = np.outer(np.cos(angle_rad), columns[:, 0]) + np.outer(np.sin(angle_rad), columns[:, 1])
     wave = np.exp(1j * k * flat[:, None, None] * spoke)
-    result = np.empty((len(rise), len(angle_rad), 3), dtype=np.complex128)
+    # Mean over a ring across an axis along y; an axis across y counts with the mean of its two extremes.
+    shrink = (k * sources.radius_m) ** 2 / 4.0
+    along = sources.tangent[:, 1] ** 2
+    plain, rising = 1.0 - shrink * (1.0 + along) / 2.0, shrink * (3.0 * along - 1.0) / 2.0
+    result = np.zeros((len(rise), len(angle_rad), 3), dtype=np.complex128)
     for axis, parity in enumerate((odd, even, odd)):
-        if sources.moment[:, axis].any():
-            gathered = (parity * sources.moment[:, axis]) @ gather
-            result[:, :, axis] = (wave @ gathered[:, :, None])[:, :, 0]
-        else:
-            result[:, :, axis] = 0.0
+        moment = sources.moment[:, axis]
+        if not moment.any():
+            continue
+        gathered = parity @ _summed(cell, moment * plain, len(heights), len(columns))
+        if shrink.any():
+            more = parity @ _summed(cell, moment * rising, len(heights), len(columns))
+            gathered = gathered + rise[:, None] ** 2 * more
+        result[:, :, axis] = (wave @ gathered[:, :, None])[:, :, 0]
     return result
+
+
+def _summed(cell: Integers, values: Complexes, rows: int, columns: int) -> Complexes:
+    """Values summed into the cells of a matrix (rows, columns)."""
+    size = rows * columns
+    total = np.bincount(cell, values.real, size) + 1j * np.bincount(cell, values.imag, size)
+    return total.reshape(rows, columns)
 
 
 def grid_directions(rise: Floats, angle_rad: Floats) -> Floats:

@@ -10,6 +10,9 @@ import numpy as np
 from boomwright.rf.arrays import Floats
 
 
+GRADING = 4.0
+
+
 @dataclass(frozen=True)
 class PairRule:
     """Points of a rule on the unit square: first and second coordinate, weight; each (points,)."""
@@ -44,17 +47,17 @@ def smooth_rule(count: int) -> PairRule:
 
 
 @lru_cache(maxsize=2)
-def self_rule(distance_count: int = 10, place_count: int = 4) -> PairRule:
+def self_rule(distance_count: int = 12, place_count: int = 4) -> PairRule:
     """Rule for an element with itself: the kernel is log-singular where both coordinates agree.
 
-    The distance between the points is the cube of the Gauss variable, which makes the integrand smooth and
-    resolves a kernel that changes within a thousandth of the element.
+    The distance between the points is a power of the Gauss variable, which makes the integrand smooth and resolves a
+    kernel that changes within a small part of the element, as that of a thin wire does.
     """
     v, dv = gauss_unit(distance_count)
     s, ds = gauss_unit(place_count)
-    distance = np.repeat(v**3, place_count)
+    distance = np.repeat(v**GRADING, place_count)
     place = np.tile(s, distance_count) * (1.0 - distance)
-    weight = np.outer(dv * 3.0 * v**2, ds).ravel() * (1.0 - distance)
+    weight = np.outer(dv * GRADING * v ** (GRADING - 1.0), ds).ravel() * (1.0 - distance)
     return PairRule(
         np.concatenate([place, place + distance]),
         np.concatenate([place + distance, place]),
@@ -63,13 +66,13 @@ def self_rule(distance_count: int = 10, place_count: int = 4) -> PairRule:
 
 
 @lru_cache(maxsize=2)
-def corner_rule(radial_count: int = 10, across_count: int = 5) -> PairRule:
+def corner_rule(radial_count: int = 12, across_count: int = 5) -> PairRule:
     """Rule for two elements that share a node: the first one's end (1) is the second one's start (0)."""
     v, dv = gauss_unit(radial_count)
     t, dt = gauss_unit(across_count)
-    radius = np.repeat(v**3, across_count)
+    radius = np.repeat(v**GRADING, across_count)
     share = np.tile(t, radial_count) * radius
-    weight = np.outer(dv * 3.0 * v**2, dt).ravel() * radius
+    weight = np.outer(dv * GRADING * v ** (GRADING - 1.0), dt).ravel() * radius
     return PairRule(
         1.0 - np.concatenate([radius, share]),
         np.concatenate([share, radius]),
