@@ -89,30 +89,30 @@ def measure_sweep(reading: StepReading, arguments: Arguments, also: Sequence[Any
 
 def _suspects(body: Shape, moved: Vector, leg: Vector, obstacles: Sequence[Shape]) -> list[Shape]:
     """The obstacles that a body, already moved, may meet on a further leg."""
-    box = exact_box(body) + moved
+    box = _box(body) + moved
     way = (np.minimum(box[0], box[0] + leg), np.maximum(box[1], box[1] + leg))
-    near = [one for one in obstacles if _meet(exact_box(one), way)]
+    near = [one for one in obstacles if _meet(_box(one), way)]
     if not near:
         return []
     points, triangles = _mesh(body)
-    points = points + moved
-    a, b, c = (points[triangles[:, corner]] for corner in range(3))
-    normals = np.cross(b - a, c - a)
+    corners = (points + moved)[triangles]
+    normals = np.cross(corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0])
     looking = normals @ leg > FACING * np.linalg.norm(normals, axis=1) * np.linalg.norm(leg)
-    prism = _swept(points, triangles[looking], leg)
-    if prism is None:
-        return []
-    return [one for one in near if (_manifold(one) ^ prism).volume() > TOUCH_MM3]
+    prisms = np.concatenate([corners[looking], corners[looking] + leg], axis=1)
+    return [one for one in near if _passes_through(prisms, one)]
 
 
-def _swept(points: Vector, triangles: Any, leg: Vector) -> Any:
-    """All prisms of these triangles along a move, as one body; None without triangles."""
+def _passes_through(prisms: Vector, obstacle: Shape) -> bool:
+    """Whether any of these prisms, each (6, 3), has room in common with an obstacle, by meshes."""
     import manifold3d
 
-    if len(triangles) == 0:
-        return None
-    hulls = [manifold3d.Manifold.hull_points(np.vstack([points[t], points[t] + leg])) for t in triangles]
-    return manifold3d.Manifold.batch_boolean(hulls, manifold3d.OpType.Add)
+    low, high = _box(obstacle)
+    close = np.all((prisms.min(axis=1) < high) & (prisms.max(axis=1) > low), axis=1)
+    hulls = [manifold3d.Manifold.hull_points(prism) for prism in prisms[close]]
+    if not hulls:
+        return False
+    swept = manifold3d.Manifold.batch_boolean(hulls, manifold3d.OpType.Add)
+    return bool((_manifold(obstacle) ^ swept).volume() > TOUCH_MM3)
 
 
 def measure_solids_overlap(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
@@ -154,7 +154,7 @@ def _spaces(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> 
     low, high = np.asarray(arguments["box"], dtype=float)
     room = manifold3d.Manifold.cube(tuple(high - low)).translate(tuple(low))
     inserts = [*_solids(reading, arguments.get("frame")), *_obstacles(arguments, also), *_plugs(arguments)]
-    near = [one for one in inserts if _meet(exact_box(one), (low, high))]
+    near = [one for one in inserts if _meet(_box(one), (low, high))]
     return list(manifold3d.Manifold.batch_boolean([room, *map(_manifold, near)], manifold3d.OpType.Subtract).decompose())
 
 
@@ -269,10 +269,15 @@ def _common_mm3(body: Shape, others: Sequence[Shape]) -> float:
 
     total = 0.0
     for other in others:
-        if _meet(exact_box(body), exact_box(other)):
+        if _meet(_box(body), _box(other)):
             common = volume_mm3(_boolean(BRepAlgoAPI_Common, [body], [other]))
             total += common if common > TOUCH_MM3 else 0.0
     return total
+
+
+@lru_cache(maxsize=256)
+def _box(shape: Shape) -> Vector:
+    return exact_box(shape)
 
 
 def _boolean(operation: Any, bodies: Sequence[Shape], tools: Sequence[Shape]) -> Shape:
