@@ -30,3 +30,15 @@ def test_two_processes_write_the_same_bytes(tmp_path):
     assert names == ["antenna.step", "comb-1.dxf", "cut-list.csv", "rail-1.3mf", "rail-1.step", "rail-1.stl"]
     for name in names:
         assert (here / name).read_bytes() == (there / name).read_bytes(), name
+
+
+def test_a_drawing_does_not_depend_on_the_order_of_sets(tmp_path):
+    """Seeds 1 and 4 order the names of DXF classes differently."""
+    script = "import sys; from pathlib import Path; from boomwright.formats.dxf import DXF\n"
+    script += "from boomwright.pieces import Contour, DrawingPiece, Mark\n"
+    script += "marks = (Mark(Contour(((0., 0., 1.), (4., 0., 1.))), 'CUT'),)\n"
+    script += "DXF.write(DrawingPiece('disc', 'laser', marks), Path(sys.argv[1]))"
+    for seed in ("1", "4"):
+        environment = os.environ | {"PYTHONHASHSEED": seed}
+        subprocess.run([sys.executable, "-c", script, str(tmp_path / seed)], check=True, env=environment, timeout=60)
+    assert (tmp_path / "1").read_bytes() == (tmp_path / "4").read_bytes()

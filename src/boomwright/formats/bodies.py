@@ -7,7 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
-from itertools import combinations
+from itertools import combinations, product
 from typing import Any
 
 import numpy as np
@@ -154,15 +154,21 @@ def measure_overlap(reading: StepReading, arguments: Arguments, also: Sequence[A
 
 
 def _in_design_frame(file: int, body: ReadBody, frame: Any) -> list[_Placed]:
-    from OCP.BRepBuilderAPI import BRepBuilderAPI_Transform
+    """The solids of a body, moved from the file's frame to the design's; boxes hold them, exactly for quarter turns."""
     from OCP.gp import gp_Trsf
+    from OCP.TopLoc import TopLoc_Location
 
-    solids: Sequence[Any] = body.solids
-    if frame is not None and not np.array_equal(np.asarray(frame, dtype=float), np.eye(4)):
-        motion = gp_Trsf()
-        motion.SetValues(*(float(value) for value in np.asarray(frame, dtype=float)[:3].ravel()))
-        solids = [BRepBuilderAPI_Transform(solid, motion.Inverted(), True).Shape() for solid in solids]
-    return [_Placed(file, solid, *exact_box(solid)) for solid in solids]
+    if frame is None:
+        boxed = zip(body.solids, body.solid_boxes, strict=True)
+        return [_Placed(file, solid, box[0], box[1]) for solid, box in boxed]
+    matrix, motion = np.asarray(frame, dtype=float), gp_Trsf()
+    motion.SetValues(*matrix[:3].ravel().tolist())
+    location, placed = TopLoc_Location(motion.Inverted()), []
+    for solid, box in zip(body.solids, body.solid_boxes, strict=True):
+        corners = np.array(list(product(*box.T))) - matrix[:3, 3]
+        corners = corners @ matrix[:3, :3]
+        placed.append(_Placed(file, solid.Moved(location), corners.min(axis=0), corners.max(axis=0)))
+    return placed
 
 
 def _common_mm3(one: _Placed, others: Sequence[_Placed]) -> float:

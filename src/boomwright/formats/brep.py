@@ -75,9 +75,17 @@ class ReadBody:
         return tuple(_explore(self.wrapped, TopAbs_SOLID))
 
     @cached_property
+    def solid_boxes(self) -> tuple[Vector, ...]:
+        """Exact box of each solid [mm], as `box`."""
+        return tuple(exact_box(solid) for solid in self.solids)
+
+    @cached_property
     def box(self) -> Vector:
         """Exact box [mm]: two rows, the low and the high corner."""
-        return exact_box(self.wrapped)
+        if not self.solids:
+            return exact_box(self.wrapped)
+        boxes = np.array(self.solid_boxes)
+        return np.stack([boxes[:, 0].min(axis=0), boxes[:, 1].max(axis=0)])
 
     @cached_property
     def faces(self) -> tuple[FaceView, ...]:

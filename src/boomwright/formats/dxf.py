@@ -125,6 +125,9 @@ def _document(piece: DrawingPiece) -> Any:
     for text in piece.lettering:
         attributes = {"layer": text.layer, "insert": (text.x_mm, text.y_mm)}
         space.add_text(text.text, height=text.height_mm, dxfattribs=attributes)
+    # Saving would enter these in the order of a set, which changes from process to process.
+    for kind in sorted(document.entitydb.dxf_types_in_use()):
+        document.classes.add_class(kind)
     points = [(x, y) for mark in piece.marks for x, y, _ in mark.contour.vertices]
     if points:
         xs, ys = zip(*points, strict=True)

@@ -79,14 +79,14 @@ def measure_volume(reading: MeshReading, arguments: Mapping[str, Any], also: Seq
 
 def measure_body_count(reading: MeshReading, arguments: Mapping[str, Any], also: Sequence[Any]) -> float:
     """Number of surfaces that do not hang together."""
-    from scipy.sparse import coo_matrix
-    from scipy.sparse.csgraph import connected_components
-
     start, end = reading.triangles.ravel(), np.roll(reading.triangles, -1, axis=1).ravel()
-    size = len(reading.vertices)
-    links = coo_matrix((np.ones(len(start)), (start, end)), shape=(size, size))
-    count, _ = connected_components(links, directed=False)
-    return float(count)
+    root = np.arange(len(reading.vertices))
+    while not np.array_equal(root[start], root[end]):
+        low, high = np.minimum(root[start], root[end]), np.maximum(root[start], root[end])
+        np.minimum.at(root, high, low)
+        while not np.array_equal(root, root[root]):
+            root = root[root]
+    return float(len(np.unique(root)))
 
 
 def measure_extent(reading: MeshReading, arguments: Mapping[str, Any], also: Sequence[Any]) -> float:

@@ -92,16 +92,26 @@ def _tessellate(shape: Any) -> list[tuple[Vector, Triangles]]:
 
 def merge(points: Vector, triangles: Triangles) -> Mesh:
     """Corners nearer than SAME_POINT_MM made one, rounded to 32 bits, made one again; collapsed triangles dropped."""
-    from scipy.sparse import coo_matrix
-    from scipy.sparse.csgraph import connected_components
-    from scipy.spatial import cKDTree
-
-    pairs = cKDTree(points).query_pairs(SAME_POINT_MM, output_type="ndarray")
-    links = coo_matrix((np.ones(len(pairs)), (pairs[:, 0], pairs[:, 1])), shape=(len(points), len(points)))
-    _, cluster = connected_components(links, directed=False)
+    cluster = _clusters(points)
     _, first = np.unique(cluster, return_index=True)
     rounded = points[first].astype(np.float32) + np.float32(0.0)
     return Mesh(*_compact(rounded, first_alike(rounded)[cluster[triangles]]))
+
+
+def _clusters(points: Vector) -> NDArray[np.int64]:
+    """A number for every point, the same for points that lie together, shape (n,).
+
+    Split at gaps along x, y and z in turn until no split is left: no grid, so no point can fall across its lines.
+    """
+    label, count = np.zeros(len(points), dtype=np.int64), 0
+    while True:
+        for axis in range(3):
+            order = np.lexsort((points[:, axis], label))
+            apart = (np.diff(points[order, axis]) > SAME_POINT_MM) | (np.diff(label[order]) > 0)
+            label[order] = np.concatenate(([0], np.cumsum(apart)))
+        if int(label.max()) == count:
+            return label
+        count = int(label.max())
 
 
 def first_alike(vertices: NDArray[Any]) -> NDArray[np.int64]:
