@@ -128,8 +128,8 @@ def test_dipole_functions(row):
 
     They are the impedance of a sinusoidal current, and so are compared with the same matrix under that current. The
     converged current of such a wire gives 8 % more resistance at half a wave and 12 % less on short dipoles.
-    The logarithm that goes with this X is that of h / a; with 2 h / a, as the table's column `formula` has it, X would be
-    83 ohm times cot(kh) off, at any thinness.
+    The logarithm that goes with this X is that of h / a; with 2 h / a, as the table's column `formula` has it, X would
+    be 83 ohm times cot(kh) off, at any thinness.
     """
     kh, radius = float(row["kh_rad"]), 1e-4
     half = kh / (2.0 * pi)

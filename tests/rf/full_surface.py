@@ -14,14 +14,9 @@ from scipy.sparse import csr_matrix
 
 SPEED_M_S = 299_792_458.0
 ETA_OHM = 4e-7 * np.pi * SPEED_M_S
-# Seven-point rule of degree 5 on a triangle (Radon), barycentric.
-_A, _B = (6 - np.sqrt(15)) / 21, (6 + np.sqrt(15)) / 21
-POINTS = np.array(
-    [[1 / 3] * 3]
-    + [[_A if i != j else 1 - 2 * _A for j in range(3)] for i in range(3)]
-    + [[_B if i != j else 1 - 2 * _B for j in range(3)] for i in range(3)]
-)
-WEIGHTS = np.array([9 / 40] + [(155 - np.sqrt(15)) / 1200] * 3 + [(155 + np.sqrt(15)) / 1200] * 3)
+# Three-point rule of degree 2 on a triangle, barycentric.
+POINTS = np.array([[2 / 3 if i == j else 1 / 6 for j in range(3)] for i in range(3)])
+WEIGHTS = np.full(3, 1 / 3)
 IMAGES = [(y, z) for y in (1.0, -1.0) for z in (1.0, -1.0)]
 
 
@@ -36,8 +31,9 @@ class Answer:
     triangles: int
 
 
-def quarter_rod(at_m, length_m, radius_m, gap_m, around, along):
+def quarter_rod(rod, around, along):
     """Vertices and triangles of the quarter y >= 0, z >= 0 of a rod; `around` cells over 180 degrees."""
+    at_m, length_m, radius_m, gap_m = rod.at_m, rod.length_m, rod.radius_m, rod.gap_m
     n = 2 * around
     # Vertices a little outside, so that the polygon's mean radius is the rod's.
     outer = radius_m * (1 + (np.pi / n) ** 2 / 3)
@@ -111,26 +107,21 @@ def static_potential(points, corners):
     return scalar, vector - (height * scalar)[:, None] * normal
 
 
-def pair_integrals(test, source, k):
-    """Integrals over all pairs of triangles of G, r G, r' G and r . r' G."""
-    count = len(test)
+def pair_integrals(test, source, turn, k):
+    """Integrals over all pairs of triangles of G, r G, turn r' G and r . turn r' G; `turn` scales the components."""
     area_t, area_s = areas(test), areas(source)
     points = np.einsum("pb,tbc->tpc", POINTS, test)
     others = np.einsum("pb,tbc->tpc", POINTS, source)
-    size = np.sqrt(area_s) * 2.0
-    zero = np.zeros((count, len(source)), dtype=complex)
-    total, first, second, product = zero, np.zeros((*zero.shape, 3), complex), np.zeros((*zero.shape, 3), complex), 0
-    product = zero.copy()
-    total = zero.copy()
-    near = np.linalg.norm(test.mean(axis=1)[:, None] - source.mean(axis=1)[None], axis=2) < 2.0 * size[None, :]
-    p, q = np.nonzero(near)
+    shape = (len(test), len(source))
+    total, product = np.zeros(shape, complex), np.zeros(shape, complex)
+    first, second = np.zeros((*shape, 3), complex), np.zeros((*shape, 3), complex)
+    apart = np.linalg.norm(test.mean(axis=1)[:, None] - source.mean(axis=1)[None], axis=2)
+    p, q = np.nonzero(apart < 4.0 * np.sqrt(area_s))
     for i, weight in enumerate(WEIGHTS):
         r = points[:, i]
-        value = np.zeros_like(zero)
-        moment = np.zeros((*zero.shape, 3), dtype=complex)
+        value, moment = np.zeros(shape, complex), np.zeros((*shape, 3), complex)
         for j, share in enumerate(WEIGHTS):
-            across = r[:, None] - others[None, :, j]
-            distance = np.maximum(np.linalg.norm(across, axis=2), 1e-30)
+            distance = np.maximum(np.linalg.norm(r[:, None] - others[None, :, j], axis=2), 1e-30)
             wave = np.exp(-1j * k * distance) / distance
             close = distance[p, q]
             wave[p, q] = np.where(close < 1e-15, -1j * k, (np.exp(-1j * k * close) - 1) / close)
@@ -140,9 +131,10 @@ def pair_integrals(test, source, k):
         scalar, vector = static_potential(r[p], source[q])
         value[p, q] += scalar
         moment[p, q] += vector + scalar[:, None] * r[p]
+        moment *= turn
         scale = (weight * area_t)[:, None]
         total += scale * value
-        first += scale[..., None] * value[..., None] * r[:, None]
+        first += (scale * value)[..., None] * r[:, None]
         second += scale[..., None] * moment
         product += scale * (moment * r[:, None]).sum(axis=2)
     return total, first, second, product
@@ -156,7 +148,7 @@ def areas(corners):
 def solve_rods(rods, frequency_hz, around=6, along=12):
     """Solve perfect, parallel, coplanar rods (objects with at_m, length_m, radius_m, gap_m), one of them fed."""
     k = 2 * np.pi * frequency_hz / SPEED_M_S
-    parts = [quarter_rod(rod.at_m, rod.length_m, rod.radius_m, rod.gap_m, around, along) for rod in rods]
+    parts = [quarter_rod(rod, around, along) for rod in rods]
     shifts = np.concatenate([[0], np.cumsum([len(v) for v, _ in parts])])
     vertices = np.concatenate([v for v, _ in parts])
     triangles = np.concatenate([t + s for (_, t), s in zip(parts, shifts, strict=False)])
@@ -170,7 +162,8 @@ def solve_rods(rods, frequency_hz, around=6, along=12):
     for y, z in IMAGES:
         flip, sign = np.array([1, y, z]), np.array([y, 1.0, y * z])
         mirrored = corners * flip
-        g, rg, sg, rsg = pair_integrals_signed(corners, mirrored, flip, sign, k)
+        # Mirrored current: component c of (r' - v) at the real source times sign[c]; r' real = r' mirrored * flip.
+        g, rg, sg, rsg = pair_integrals(corners, mirrored, flip * sign, k)
         matrix -= y * (divergence.T @ g @ divergence) / k**2
         for i in range(3):
             for j in range(3):
@@ -186,47 +179,6 @@ def solve_rods(rods, frequency_hz, around=6, along=12):
     currents = np.linalg.solve(matrix, right)
     density = [m @ currents for m in inverse]
     return _answer(corners, area, density, complex(right @ currents), k)
-
-
-def pair_integrals_signed(test, mirrored, flip, sign, k):
-    """`pair_integrals` with the source's own coordinate turned into the mirrored current's direction."""
-    g, rg, sg, _ = pair_integrals(test, mirrored, k)
-    # Mirrored current: component c of (r' - v) at the real source times sign[c]; r' real = r' mirrored * flip.
-    turn = flip * sign
-    product = pair_products(test, mirrored, turn, k)
-    return g, rg, sg * turn, product
-
-
-def pair_products(test, source, turn, k):
-    """Integrals of r . (turn r') G over all pairs."""
-    if np.all(turn == turn[0]):
-        return turn[0] * pair_integrals(test, source, k)[3]
-    total = np.zeros((len(test), len(source)), dtype=complex)
-    for axis in range(3):
-        total += turn[axis] * _axis_product(test, source, axis, k)
-    return total
-
-
-def _axis_product(test, source, axis, k):
-    area_t, area_s = areas(test), areas(source)
-    points = np.einsum("pb,tbc->tpc", POINTS, test)
-    others = np.einsum("pb,tbc->tpc", POINTS, source)
-    near = np.linalg.norm(test.mean(axis=1)[:, None] - source.mean(axis=1)[None], axis=2) < 4.0 * np.sqrt(area_s)
-    p, q = np.nonzero(near)
-    total = np.zeros((len(test), len(source)), dtype=complex)
-    for i, weight in enumerate(WEIGHTS):
-        r = points[:, i]
-        moment = np.zeros_like(total)
-        for j, share in enumerate(WEIGHTS):
-            distance = np.maximum(np.linalg.norm(r[:, None] - others[None, :, j], axis=2), 1e-30)
-            wave = np.exp(-1j * k * distance) / distance
-            close = distance[p, q]
-            wave[p, q] = np.where(close < 1e-15, -1j * k, (np.exp(-1j * k * close) - 1) / close)
-            moment += wave * share * area_s * others[None, :, j, axis]
-        scalar, vector = static_potential(r[p], source[q])
-        moment[p, q] += vector[:, axis] + scalar * r[p, axis]
-        total += (weight * area_t * r[:, axis])[:, None] * moment
-    return total
 
 
 def _answer(corners, area, density, feed_current, k):

@@ -101,7 +101,8 @@ def can_resolve(wires: Wires, frequency_hz: float) -> bool:
     """
     gap_m = least_surface_gap_m(wires)
     return all(
-        largest_element_m(conductor, frequency_hz) <= FINEST_FACTOR * GAP_SHARE * gap_m for conductor in wires.conductors
+        largest_element_m(conductor, frequency_hz) <= FINEST_FACTOR * GAP_SHARE * gap_m
+        for conductor in wires.conductors
     )
 
 

@@ -9,7 +9,6 @@ import numpy as np
 
 from boomwright.rf.arrays import Floats
 
-
 GRADING = 4.0
 
 

@@ -6,13 +6,13 @@ import numpy as np
 
 from boomwright.rf.arrays import Complexes, Floats, Integers
 from boomwright.rf.azimuth import Surface, surface_coupling
-from boomwright.rf.coupling import MIRROR_SIGNS, Samples, contracted, quadrature_points, ring_kernels
+from boomwright.rf.coupling import MIRROR_SIGNS, Samples, contracted, quadrature_points, ring_kernels, straight_runs
 from boomwright.rf.kernels import averaged_kernel
 from boomwright.rf.mesh import Mesh, rings
 from boomwright.rf.own import FAR_SIZES, OwnAction, block, element_gaps, nodal
 from boomwright.rf.quadrature import smooth_rule
 
-CHORD_RADII = 4.0
+CHORD_RADII, COAXIAL_RADII = 4.0, 12.0
 CLOSE_POINTS_MAX = 40
 
 Mask = np.ndarray[tuple[int, ...], np.dtype[np.bool_]]
@@ -95,7 +95,14 @@ def _near(mesh: Mesh, mirrored: bool) -> Mask:
     else:
         along = np.maximum(start[:, None], start[None, :]) - np.minimum(end[:, None], end[None, :])
     radius = mesh.radius_m[:, 0]
-    reach = CHORD_RADII * np.maximum(radius[:, None], radius[None, :])
+    run = np.zeros(mesh.elements, dtype=np.int64)
+    for number, (first, last) in enumerate(straight_runs(mesh)):
+        run[first:last] = number
+    same = run[:, None] == run[None, :]
+    if mirrored:
+        # Runs go straight on across the mirror plane at the feed and opposite it, nowhere else.
+        same &= np.isin(run, (run[0], run[-1]))[None, :] & (mesh.bend_rad_m == 0.0)[None, :]
+    reach = np.where(same, COAXIAL_RADII, CHORD_RADII) * np.maximum(radius[:, None], radius[None, :])
     size = np.maximum(mesh.size_m[:, None], mesh.size_m[None, :])
     index = np.arange(mesh.elements)
     touching = np.abs(index[:, None] - index[None, :]) <= (-1 if mirrored else 1)
