@@ -151,7 +151,8 @@ def mesh_of(shape: Shape) -> tuple[Vector, Any]:
         corners = np.array([mesh.Triangle(i).Get() for i in range(1, mesh.NbTriangles() + 1)]) - 1 + count
         triangles.append(corners[:, ::-1] if face.face.Orientation() == TopAbs_REVERSED else corners)
         count += len(nodes)
-    merged, index = np.unique(np.round(np.vstack(points), 7), axis=0, return_inverse=True)
+    rounded = np.round(np.vstack(points), 7).astype(np.float64)
+    merged, index = np.unique(rounded, axis=0, return_inverse=True)
     found = index.reshape(-1)[np.vstack(triangles)]
     distinct = (found[:, 0] != found[:, 1]) & (found[:, 1] != found[:, 2]) & (found[:, 2] != found[:, 0])
     return merged, found[distinct]

@@ -14,7 +14,7 @@ from boomwright.parts.mould_halves import clip_shape, half_shape
 from boomwright.parts.palette import PRINTED
 from boomwright.pieces import Body, Expectation, Matrix, Part, Piece, Probe, SolidPiece
 from boomwright.plan.compensation import printer_offsets
-from boomwright.plan.mould import HALVES, Half, MouldPlan
+from boomwright.plan.mould_plan import HALVES, Half, MouldPlan
 
 if TYPE_CHECKING:
     from boomwright.plan.plan import Plan

@@ -17,13 +17,14 @@ from boomwright.parts.solids import (
     prism_along_z,
 )
 from boomwright.plan.compensation import NOMINAL, Offsets
-from boomwright.plan.mould import CHAMFER_MM, BoomChannel, Half, MouldPlan, Opening
+from boomwright.plan.mould_plan import BoomChannel, Half, MouldPlan, Opening
 from boomwright.plan.parting import PRY_DEPTH_MM, SOCKET_SPARE_MM, Notch, Pin
 
 if TYPE_CHECKING:
     from boomwright.plan.clip import ClipPlan
 
 OVERRUN_MM = 1.0
+CHAMFER_MM = 0.4
 INTO_CAVITY_MM = 0.3
 PIN_ROOT_MM = 1.0
 PIN_LEAD_MM = 0.3
@@ -101,7 +102,7 @@ def cavity_shape(mould: MouldPlan, growth_mm: float = 0.0) -> Shape:
 
 
 def boom_channel(channel: BoomChannel, clearance_mm: float) -> Shape:
-    """The boom's outline widened by a clearance and drawn out along x; where it is open, straight sides from the axis on."""
+    """The boom's outline widened by a clearance, drawn out along x; open: straight sides from the axis on."""
     import cadquery as cq
 
     half, axis, (x0, x1) = channel.half_mm + clearance_mm, channel.axis_mm, channel.x_mm

@@ -111,7 +111,7 @@ class BoomBar:
 
 
 def boom_mm3(cavity: Cavity, boom: BoomBar) -> float:
-    """Volume of the boom in the cavity [mm³], grooves and pockets left out: the resin fills them. A tube counts as full."""
+    """Volume of the boom in the cavity [mm³]: the resin fills grooves and pockets; a tube counts as full."""
     low, high = cavity.depth_mm
     pulls = low + (np.arange(ROWS) + 0.5) * (high - low) / ROWS
     less = cavity.slope * np.abs(pulls - cavity.across.widest_mm)
@@ -160,12 +160,12 @@ def places_along(run: Run, shares: Array) -> Array:
     """Points at these shares (0 to 1) of a run's length: (n, 3) [mm]."""
     start, end = np.array(run.start), np.array(run.end)
     if run.middle is None:
-        return start + shares[:, None] * (end - start)
+        return np.asarray(start + shares[:, None] * (end - start))
     centre, first = _centre(run), start - _centre(run)
     normal = np.cross(first, np.array(run.middle) - centre)
     second = np.cross(normal / np.linalg.norm(normal), first)
     angles = shares[:, None] * run.angle_rad
-    return centre + np.cos(angles) * first + np.sin(angles) * second
+    return np.asarray(centre + np.cos(angles) * first + np.sin(angles) * second)
 
 
 def _centre(run: Run) -> Array:

@@ -79,11 +79,6 @@ class MouldRoom:
         return math.tan(math.radians(self.shop.mould.draft_deg))
 
     @property
-    def under_rods_mm(self) -> float:
-        """How far a loop's mould stays below rods and their seats [mm]."""
-        return UNDER_RODS_MM
-
-    @property
     def encloses_second(self) -> bool:
         """Whether the second conductor of an upright element stands in the resin."""
         return self.driven.spacing_mm is not None and self.driven.spacing_mm <= ENCLOSED_SPACING_MM
@@ -145,7 +140,8 @@ def cavity_ends(room: MouldRoom, inner_half_mm: float) -> tuple[Ends, list[Fault
     sides = [_fit(room, rear, first, -1.0)]
     if room.pull == "z" and driven.form == "folded":
         assert driven.spacing_mm is not None
-        second = Neighbour(driven.at_mm + driven.spacing_mm - room.radius_mm, "the second conductor", "driven.spacing_mm")
+        surface = driven.at_mm + driven.spacing_mm - room.radius_mm
+        second = Neighbour(surface, "the second conductor", "driven.spacing_mm")
         alone = _fit(room, second, driven.at_mm, 1.0)
         if not alone.fault and _bend_passes_beside(room, alone, inner_half_mm):
             sides.append(alone)
@@ -218,7 +214,7 @@ def _no_room(room: MouldRoom, neighbour: Neighbour, free_mm: float, short_mm: fl
 
 
 def _bend_passes_beside(room: MouldRoom, side: _Side, inner_half_mm: float) -> bool:
-    """Whether a flat element's bends cross the front wall outside the cavity's width: there the halves part at z = 0."""
+    """Whether a flat element's bends cross the front wall where the halves part at z = 0."""
     driven = room.driven
     assert driven.spacing_mm is not None
     bend, spacing = bend_radius_mm(driven), driven.spacing_mm

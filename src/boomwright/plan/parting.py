@@ -6,7 +6,7 @@ The two flanges mirror each other in y.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import combinations
 
 import shapely
@@ -35,6 +35,10 @@ class Pin:
     y_mm: float
     diameter_mm: float
     height_mm: float
+
+    def mirrored(self) -> Pin:
+        """The same pin on the other flange."""
+        return replace(self, y_mm=-self.y_mm)
 
 
 @dataclass(frozen=True)
@@ -82,7 +86,7 @@ def lay_out_parting(u_mm: Span, inner_mm: float, body_mm: float, channels: BaseG
     channels  what is cut into the parting face already, in (u, y) [mm]
     room      what the pins need
 
-    Returns the face; without pins where none of 1.2 mm fits on a flange of 30 mm.
+    Returns the face; without pins where none of 1.2 mm fits on a flange of 30 mm, without ties where no notch does.
     """
     both = shapely.union_all([channels, shapely.transform(channels, lambda points: points * (1.0, -1.0))])
     best: PartingFace | None = None
@@ -93,25 +97,24 @@ def lay_out_parting(u_mm: Span, inner_mm: float, body_mm: float, channels: BaseG
         taken = shapely.union_all([both, *(n.polygon for n in (*ties, *pries))])
         free = shapely.box(u_mm[0], inner_mm, u_mm[1], outer).difference(taken)
         pins = _pins(free, room)
-        face = PartingFace(outer, *(_on_both(items) for items in (pins, ties, pries)))
-        if best is None or _pin_mm(face) > _pin_mm(best):
+        face = PartingFace(
+            outer,
+            (*pins, *(pin.mirrored() for pin in pins)),
+            (*ties, *(notch.mirrored() for notch in ties)),
+            (*pries, *(notch.mirrored() for notch in pries)),
+        )
+        if best is None or _worth(face) > _worth(best):
             best = face
-        if _pin_mm(face) >= GOOD_PIN_MM:
+        if _worth(best) >= (True, GOOD_PIN_MM):
             break
     assert best is not None
     return best
 
 
-def _pin_mm(face: PartingFace) -> float:
-    return face.pins[0].diameter_mm if face.pins else 0.0
-
-
-def _on_both(items: tuple[object, ...]) -> tuple:  # type: ignore[type-arg]
-    mirrored = [
-        Pin(i.u_mm, -i.y_mm, i.diameter_mm, i.height_mm) if isinstance(i, Pin) else i.mirrored()  # type: ignore[attr-defined]
-        for i in items
-    ]
-    return (*items, *mirrored)
+def _worth(face: PartingFace) -> tuple[bool, float]:
+    """Pins before all, then room for ties, then thick pins; pins past the good measure count no more."""
+    thickness = face.pins[0].diameter_mm if face.pins else 0.0
+    return bool(face.pins and face.ties), min(thickness, GOOD_PIN_MM)
 
 
 def _pins(free: BaseGeometry, room: PinRoom) -> tuple[Pin, ...]:
