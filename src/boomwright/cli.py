@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import sys
+from collections.abc import Sequence
 from enum import StrEnum
 from pathlib import Path
 from typing import Annotated, NoReturn
@@ -60,7 +61,7 @@ def make(
     only: Annotated[list[str] | None, typer.Option(help="Make only this part (may be repeated).")] = None,
     quiet: Quiet = False,
 ) -> None:
-    """Make every file a design needs, measure each one, and say what came out."""
+    """Make every file a design needs, measure each one, and judge audit and spec."""
     from boomwright.pipeline import make as run
 
     made = run(design, shop, out, only or (), _progress)
@@ -70,7 +71,8 @@ def make(
         for name, reason in made.manifest.left_out.items():
             typer.echo(f"left out: {name}: {reason}")
         typer.echo(f"{len(made.manifest.entries)} files in {made.folder}")
-    _judge(made.audit, quiet)
+        typer.echo(made.prediction.band_line)
+    _judge(made.audit, quiet, made.prediction.shortfalls)
 
 
 @app.command()
@@ -80,18 +82,22 @@ def predict(
     at_mhz: Annotated[list[float] | None, typer.Option(help="Only this frequency in MHz (may be repeated).")] = None,
     points: Annotated[int | None, typer.Option(help="Number of frequencies of the sweep; absent = 61.")] = None,
     as_json: AsJson = False,
+    out: Annotated[Path | None, typer.Option(help="Also write tables, charts and a Touchstone file there.")] = None,
     quiet: Quiet = False,
 ) -> None:
     """Solve the antenna: impedance, gain, front-to-back and beamwidths over the band, and its spec judged."""
     from boomwright.prediction import predict_file
 
     found = predict_file(design, at_mhz or (), points)
+    if out is not None:
+        from boomwright.output import write_prediction
+
+        write_prediction(found, out)
     if as_json:
         typer.echo(found.as_json(), nl=False)
     elif not quiet:
         typer.echo(found.as_text())
-    for shortfall in found.shortfalls:
-        typer.echo(f"not met: {shortfall}", err=True)
+    _tell_shortfalls(found.shortfalls)
     raise typer.Exit(NOT_MET if found.shortfalls else DONE)
 
 
@@ -119,7 +125,12 @@ def show(subject: Annotated[Subject, typer.Argument(help="What to list.")]) -> N
     typer.echo(listing(subject.value))
 
 
-def _judge(result: object, quiet: bool) -> NoReturn:
+def _tell_shortfalls(shortfalls: Sequence[object]) -> None:
+    for shortfall in shortfalls:
+        typer.echo(f"not met: {shortfall}", err=True)
+
+
+def _judge(result: object, quiet: bool, shortfalls: Sequence[object] = ()) -> NoReturn:
     from boomwright.audit import Audit
 
     assert isinstance(result, Audit)
@@ -130,7 +141,8 @@ def _judge(result: object, quiet: bool) -> NoReturn:
         typer.echo(f"not met: {more} more, see audit.json or --json", err=True)
     if not quiet:
         typer.echo(f"audit: {len(result.findings)} quantities measured, {len(result.failures)} not met")
-    raise typer.Exit(DONE if result.ok else NOT_MET)
+    _tell_shortfalls(shortfalls)
+    raise typer.Exit(DONE if result.ok and not shortfalls else NOT_MET)
 
 
 def _progress(step: str) -> None:

@@ -24,8 +24,10 @@ __all__ = [
     "Lettering",
     "Mark",
     "Matrix",
+    "NetworkPiece",
     "Operation",
     "Part",
+    "PicturePiece",
     "Piece",
     "Probe",
     "Process",
@@ -33,7 +35,7 @@ __all__ = [
     "TablePiece",
 ]
 
-Process = Literal["assembly", "print", "laser", "cnc", "bench"]
+Process = Literal["assembly", "print", "laser", "cnc", "bench", "rf"]
 Operation = Literal["cut", "score", "engrave"]
 Colour = tuple[float, float, float]
 
@@ -119,7 +121,31 @@ class TablePiece:
     rows: tuple[tuple[str, ...], ...]
 
 
-Piece = SolidPiece | DrawingPiece | TablePiece
+@dataclass(frozen=True)
+class NetworkPiece:
+    """A one-port over frequency for one Touchstone file.
+
+    frequency_hz  ascending [Hz], (F,)
+    reflection    coefficient in `system_ohm`, (F,)
+    """
+
+    stem: str
+    process: Process
+    frequency_hz: tuple[float, ...]
+    reflection: tuple[complex, ...]
+    system_ohm: float = 50.0
+
+
+@dataclass(frozen=True)
+class PicturePiece:
+    """A chart for one SVG file; `svg` is the whole document."""
+
+    stem: str
+    process: Process
+    svg: str
+
+
+Piece = SolidPiece | DrawingPiece | TablePiece | NetworkPiece | PicturePiece
 
 
 @dataclass(frozen=True)

@@ -11,12 +11,13 @@ from boomwright.audit import FILE as AUDIT_FILE
 from boomwright.design.tomlfile import load_design, write_design
 from boomwright.errors import CatalogueError, Fault, InputFault, PlanFault
 from boomwright.folder import check_replaceable, fresh_folder
-from boomwright.formats.catalogue import FORMATS
 from boomwright.formats.format import FileEntry
 from boomwright.manifest import Manifest, write_manifest
+from boomwright.output import write_piece
 from boomwright.parts.catalogue import PARTS
-from boomwright.pieces import IDENTITY, Part, Piece, TablePiece
+from boomwright.pieces import IDENTITY, Part
 from boomwright.plan.plan import Plan, make_plan
+from boomwright.prediction import Prediction, predict
 from boomwright.shop.tomlfile import load_shop, write_shop
 
 OUTPUTS = Path("outputs")
@@ -29,12 +30,13 @@ Progress = Callable[[str], None]
 
 @dataclass(frozen=True)
 class Made:
-    """What a run left: the folder, the plan, the manifest and the audit."""
+    """What a run left: the folder, the plan, the manifest, the audit, and what the antenna is predicted to do."""
 
     folder: Path
     plan: Plan
     manifest: Manifest
     audit: Audit
+    prediction: Prediction
 
 
 def make(
@@ -63,6 +65,8 @@ def make(
         faults = [fault for part in parts for fault in plan.faults.get(part.name, ())]
         if faults:
             raise PlanFault(dict.fromkeys(faults))
+        progress("solving")
+        prediction = predict(design)
     except InputFault as fault:
         raise _in_files(fault, design_path, shop_path) from None
     target = out if out is not None else OUTPUTS / design.name
@@ -74,13 +78,13 @@ def make(
         (folder / SHOP_FILE).write_text(write_shop(shop), "utf-8")
         for part in parts:
             progress(f"building {part.name}")
-            entries += [entry for piece in part.build(plan) for entry in _write(part, piece, folder)]
+            entries += [entry for piece in part.build(plan) for entry in write_piece(part.name, piece, folder)]
         manifest = write_manifest(folder, entries, [part.name for part in parts], left_out, plan.sizes)
         progress("measuring the files")
         audit = audit_folder(folder)
         (folder / AUDIT_FILE).write_text(audit.as_json(), "utf-8")
         progress("")
-    return Made(target, plan, manifest, audit)
+    return Made(target, plan, manifest, audit, prediction)
 
 
 def _chosen(only: Sequence[str]) -> list[Part]:
@@ -89,22 +93,6 @@ def _chosen(only: Sequence[str]) -> list[Part]:
     except CatalogueError as error:
         raise InputFault([Fault("--only", str(error), "give a name that `boomwright show parts` lists")]) from None
     return [part for part in PARTS if not wanted or part.name in wanted or part.name == ALWAYS]
-
-
-def _write(part: Part, piece: Piece, folder: Path) -> list[FileEntry]:
-    """Write a piece in every format that takes it."""
-    entries = []
-    place = folder if piece.process == "assembly" else folder / piece.process
-    place.mkdir(exist_ok=True)
-    for form in FORMATS:
-        if form.takes(piece):
-            path = place / f"{piece.stem}{form.suffix}"
-            form.write(piece, path)
-            frame = IDENTITY if isinstance(piece, TablePiece) else piece.frame
-            offsets = {} if isinstance(piece, TablePiece) or form.name == "step" else dict(piece.offsets)
-            name = path.relative_to(folder).as_posix()
-            entries.append(FileEntry(name, part.name, piece.process, form.name, form.unit, frame, offsets))
-    return entries
 
 
 def _in_files(fault: InputFault, design_path: Path, shop_path: Path | None) -> InputFault:

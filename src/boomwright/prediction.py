@@ -87,21 +87,29 @@ class Prediction:
             ROW.format(*COLUMNS),
             *(_row(f, s) for f, s in zip(self.frequency_mhz, _figures(self.sweep), strict=True)),
         ]
-        lines += ["", *self._summary(), *(f"warning: {each}" for each in self.warnings)]
+        lines += ["", self._beam_line, self.band_line, *(f"warning: {each}" for each in self.warnings)]
         return "\n".join(lines)
 
-    def _summary(self) -> list[str]:
-        found, inside, middle = self.sweep, list(self.in_band), self.middle
+    @property
+    def band_line(self) -> str:
+        """The worst figures of the frequencies that lie in the band, and whether they meet the spec."""
+        found, inside = self.sweep, list(self.in_band)
+        if not inside:
+            return "no frequency lies in the band"
+        low, high = self.frequency_mhz[inside[0]], self.frequency_mhz[inside[-1]]
+        verdict = "" if self.design.spec is None else f"; spec {'not met' if self.shortfalls else 'met'}"
+        return (
+            f"{low:g} to {high:g} MHz: gain {found.gain_dbi[inside].min():.2f} dBi or more, "
+            f"front-to-back {found.front_to_back_db[inside].min():.1f} dB or more, "
+            f"VSWR {found.vswr[inside].max():.2f} or less{verdict}"
+        )
+
+    @property
+    def _beam_line(self) -> str:
+        found, middle = self.sweep, self.middle
         beams = (("E-plane", found.beamwidth_e_deg[middle]), ("H-plane", found.beamwidth_h_deg[middle]))
         words = [f"{plane} {'none' if width is None else f'{width:.1f} deg'}" for plane, width in beams]
-        lines = [f"half-power beamwidth at {self.frequency_mhz[middle]:g} MHz: {', '.join(words)}"]
-        if inside:
-            low, high = self.frequency_mhz[inside[0]], self.frequency_mhz[inside[-1]]
-            lines.append(
-                f"{low:g} to {high:g} MHz: gain {found.gain_dbi[inside].min():.2f} dBi or more, front-to-back "
-                f"{found.front_to_back_db[inside].min():.1f} dB or more, VSWR {found.vswr[inside].max():.2f} or less"
-            )
-        return lines
+        return f"half-power beamwidth at {self.frequency_mhz[middle]:g} MHz: {', '.join(words)}"
 
 
 def predict_file(design_path: Path, at_mhz: Sequence[float] = (), points: int | None = None) -> Prediction:

@@ -74,7 +74,7 @@ def test_junk_is_no_table(junk, tmp_path):
         FORMATS["csv"].read(path)
 
 
-@pytest.mark.parametrize("name", ["step", "stl", "3mf", "dxf", "csv"])
+@pytest.mark.parametrize("name", FORMATS.names())
 def test_a_missing_file_is_a_finding(name, tmp_path):
     with pytest.raises(MeasureError):
         FORMATS[name].read(tmp_path / f"gone{FORMATS[name].suffix}")
@@ -89,7 +89,7 @@ def test_a_file_cut_short_is_a_finding(name, tmp_path):
             FORMATS[entry.format].read(path)
 
 
-@pytest.mark.parametrize("name", ["step", "stl", "3mf", "dxf", "csv"])
+@pytest.mark.parametrize("name", FORMATS.names())
 def test_an_unknown_measure_names_the_known_ones(name):
     with pytest.raises(CatalogueError, match=r"unknown .* measure 'charm' \(known: "):
         FORMATS[name].measure(None, Probe("charm"), [])
@@ -105,5 +105,5 @@ def test_an_oversize_part_overruns_the_bed_either_way_round(tmp_path):
 
 
 def test_the_catalogue_lists_the_formats_without_reading_any_file():
-    assert FORMATS.names() == ("step", "stl", "3mf", "dxf", "csv")
-    assert [form.suffix for form in FORMATS] == [".step", ".stl", ".3mf", ".dxf", ".csv"]
+    assert FORMATS.names() == ("step", "stl", "3mf", "dxf", "csv", "touchstone", "svg")
+    assert [form.suffix for form in FORMATS] == [".step", ".stl", ".3mf", ".dxf", ".csv", ".s1p", ".svg"]

@@ -20,6 +20,7 @@ _OWN = (
     "boomwright.parts.cradle:CradlePart",
     "boomwright.parts.mould:Mould",
     "boomwright.parts.comb:SpacingComb",
+    "boomwright.parts.prediction:PredictionPart",
 )
 
 

@@ -1,0 +1,1 @@
+"""Figures as SVG: one file a kind of chart, drawn the same way on every machine."""
