@@ -44,7 +44,7 @@ class Step(Format):
         assert isinstance(piece, SolidPiece)
         placed = [(body, place(body.shape, piece.frame)) for body in piece.bodies]
         _transfer(piece.stem, placed, path)
-        text = _numbered_anew(_in_ascii(path.read_text("utf-8")))
+        text = _numbered_anew(_without_noise(_in_ascii(path.read_text("utf-8"))))
         path.write_text(_with_styles(text, [body.colour for body in piece.bodies]), "ascii", newline="\n")
 
     def read(self, path: Path) -> StepReading:
@@ -143,6 +143,12 @@ def _document(title: str, placed: Sequence[tuple[Body, Any]]) -> Any:
 def _in_ascii(text: str) -> str:
     """Letters beyond ASCII as ISO 10303-21 wants them, in hexadecimal."""
     return re.sub(r"[^\x00-\x7f]+", lambda found: f"\\X2\\{found[0].encode('utf-16-be').hex().upper()}\\X0\\", text)
+
+
+def _without_noise(text: str) -> str:
+    """Numbers below 1e-12 as zero: what is left of a boolean there changes from run to run."""
+    text = re.sub(r"(?<=[(,])-?\d+\.\d*E-(?:1[3-9]|[2-9]\d|\d{3})(?=[,)])", "0.", text)
+    return re.sub(r"(?<=[(,])-0\.(?=[,)])", "0.", text)
 
 
 def _numbered_anew(text: str) -> str:
