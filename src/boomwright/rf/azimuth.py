@@ -91,13 +91,15 @@ def surface(mesh: Mesh, azimuths: int, families: int, nearest_m: float = 0.0) ->
     inside[element, column] = span
     inside = inside @ chosen.shares
     hats, slopes = (value * span) @ chosen.shares, (slope * weight) @ chosen.shares
+    charge = [Term(0, ONE, slopes)]
     around = inside * at.radius_m
     unknowns = keep + families * (keep + mesh.elements)
     # (row, moments along tangent, normal, aside): {azimuth function: values}
     local: list[tuple[int, tuple[dict[int, Floats], ...]]] = [
         (0, ({ONE: hats * along, COS: -hats * along * crowd}, {COS: hats * outward}, {SIN: hats * outward}))
     ]
-    charge = [Term(0, ONE, slopes)]
+    value, slope = hat_values(mesh, element, place, plain=False)
+    hats, slopes = (value * span) @ chosen.shares, (slope * weight) @ chosen.shares
     for family in range(families):
         row = keep + family * (keep + mesh.elements)
         pair = (COS, COS_COS) if family == 0 else (SIN, SIN_COS)

@@ -13,7 +13,7 @@ import numpy as np
 
 from boomwright.rf.arrays import Complexes, Floats, Integers
 from boomwright.rf.kernels import averaged_kernel
-from boomwright.rf.mesh import Mesh, rings
+from boomwright.rf.mesh import Mesh, plain_shapes, rings
 from boomwright.rf.quadrature import gauss_unit, interpolation
 
 MIRROR_SIGNS = (-1.0, 1.0, -1.0)
@@ -51,14 +51,18 @@ def quadrature_points(mesh: Mesh) -> tuple[Integers, Floats, Floats]:
     return np.repeat(np.arange(mesh.elements), 2), np.tile(places, mesh.elements), np.tile(weights, mesh.elements)
 
 
-def hat_values(mesh: Mesh, element: Integers, place: Floats) -> tuple[Floats, Floats]:
-    """Value and slope (times element size) of every nodal basis function at given places, each (nodes kept, Q)."""
+def hat_values(mesh: Mesh, element: Integers, place: Floats, plain: bool = True) -> tuple[Floats, Floats]:
+    """Value and slope (times element size) of every nodal basis function at given places, each (nodes kept, Q).
+
+    plain  True: those of m = 0 (`plain_shapes`), False: linear everywhere, as m = 1 has them
+    """
     keep = mesh.elements + (1 if mesh.closed else 0)
     column = np.arange(len(element))
     value = np.zeros((mesh.elements + 1, len(element)))
     slope = np.zeros_like(value)
-    value[element, column], value[element + 1, column] = 1.0 - place, place
-    slope[element, column], slope[element + 1, column] = -1.0, 1.0
+    (start, end), charge = plain_shapes(mesh, element, place) if plain else ((1.0 - place, place), np.ones(len(place)))
+    value[element, column], value[element + 1, column] = start, end
+    slope[element, column], slope[element + 1, column] = -charge, charge
     return value[:keep], slope[:keep]
 
 

@@ -18,7 +18,8 @@ from boomwright.rf.outline import outline
 
 GROWTH = 1.4
 TIP_ELEMENT_RADII = 0.005
-CAP_NODES = (1.0, 0.996, 0.985, 0.95, 0.86, 0.65, 0.3, 0.0)
+GAP_EDGE_SHARE = 0.5
+CAP_NODES = (1.0, 0.996, 0.985, 0.94, 0.8, 0.45, 0.0)
 ELEMENTS_PER_HALF_CIRCLE = 6.0
 
 
@@ -85,6 +86,18 @@ def rings(mesh: Mesh, elements: Integers, places: Floats) -> Rings:
     return Rings(centre, tangent * cosine + normal * sine, normal * cosine - tangent * sine, radius)
 
 
+def plain_shapes(mesh: Mesh, elements: Integers, places: Floats) -> tuple[tuple[Floats, Floats], Floats]:
+    """The m = 0 hats of elements' starts and ends at `places`, and the share of charge there; all broadcast.
+
+    Along a conductor hats are linear and the charge is even; on an end face the current grows with the square of the
+    radius, so that the charge is even over the face and finite on the axis.
+    """
+    start, end = mesh.radius_m[elements, 0], mesh.radius_m[elements, 1]
+    here = start + (end - start) * places
+    rising = places * (start + here) / (start + end)
+    return (1.0 - rising, rising), 2.0 * here / (start + end)
+
+
 def graded_nodes(length_m: float, largest_m: float, first_m: float, last_m: float, refinement: int = 0) -> Floats:
     """Nodes from 0 to length [m]: elements grow from `first_m` and `last_m` at the ends to at most `largest_m`.
 
@@ -112,10 +125,10 @@ def plan_nodes(conductor: Conductor, largest_m: float, refinement: int = 0) -> t
     """
     step = 0.5**refinement
     gap_m = conductor.gap_m / 2.0
-    near_gap_m = max(min(largest_m, gap_m / 2.0), 1e-3 * largest_m)
+    near_gap_m = max(min(largest_m, GAP_EDGE_SHARE * gap_m), 1e-3 * largest_m)
     parts: list[Floats] = []
     if gap_m > 0.0:
-        parts.append(graded_nodes(gap_m, near_gap_m, near_gap_m, near_gap_m / 2.0, refinement) / gap_m)
+        parts.append(graded_nodes(gap_m, largest_m, largest_m, near_gap_m, refinement) / gap_m)
     if isinstance(conductor, Rod):
         rest_m = conductor.length_m / 2.0 - gap_m
         first_m = near_gap_m if gap_m > 0.0 else largest_m

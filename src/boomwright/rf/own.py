@@ -13,7 +13,7 @@ import numpy as np
 
 from boomwright.rf.arrays import Complexes, Floats, Integers, Numbers
 from boomwright.rf.kernels import dynamic_ring_kernels, static_ring_kernels
-from boomwright.rf.mesh import Mesh, Rings, rings
+from boomwright.rf.mesh import Mesh, Rings, plain_shapes, rings
 from boomwright.rf.quadrature import PairRule, corner_rule, from_start, self_rule, smooth_rule
 
 FAR_SIZES = 1.5
@@ -141,14 +141,19 @@ class PairGeometry:
         self.radial = sign * (outward[pairs.first] * outward[pairs.second])[:, None]
         self.outward = sign * outward[pairs.first][:, None], sign * outward[pairs.second][:, None]
         self.weights = pairs.rule.moments()
+        self.hats, self.charge = plain_shapes(mesh, pairs.first[:, None], pairs.rule.first)
+        self.other_hats, self.other_charge = plain_shapes(mesh, pairs.second[:, None], pairs.rule.second)
 
     def add_to(self, total: dict[str, Numbers], harmonics: Harmonics) -> None:
         """Add the integrals of these kernels (pairs, points), exchanged pairs too, to the totals by name."""
         g0, g1, g2 = harmonics
         area = (self.size[0] * self.size[1])[:, None]
+        rule, where = self.pairs.rule, (self.pairs.first, self.pairs.second)
         hats, constant = self.weights[:4].T, self.weights[4]
-        self._put(total["current0"], area * ((self.axial * g0 + self.radial * g1) @ hats))
-        self._put(total["charge0"], self.sign * (g0 @ constant))
+        weighted = (self.axial * g0 + self.radial * g1) * rule.weight
+        plain = [((weighted * one) * two).sum(axis=1) for one in self.hats for two in self.other_hats]
+        self._put(total["current0"], area * np.column_stack(plain))
+        self._put(total["charge0"], self.sign * ((g0 * self.charge * self.other_charge) @ rule.weight))
         if "current1" not in total:
             return
         even, odd = (g0 + g2) / 2.0, (g0 - g2) / 2.0
@@ -156,7 +161,6 @@ class PairGeometry:
         self._put(total["charge1"], 0.5 * self.sign * (g1 @ constant))
         around = self.radius_m * self.source_radius_m * even
         self._put(total["around1"], 0.5 * self.sign * area[:, 0] * (around @ constant))
-        rule, where = self.pairs.rule, (self.pairs.first, self.pairs.second)
         first_hat = np.array([1.0 - rule.first, rule.first]) * rule.weight
         second_hat = np.array([1.0 - rule.second, rule.second]) * rule.weight
         total["mixed1"][where] += -0.5 * area * ((self.outward[0] * self.source_radius_m * odd) @ first_hat.T)
