@@ -13,14 +13,16 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
+from boomwright import electrical
 from boomwright.design.tomlfile import load_design
+from boomwright.electrical import Electrical, read_back
 from boomwright.errors import AccessError, CatalogueError, Fault, InputFault, MeasureError
 from boomwright.formats.catalogue import FORMATS
 from boomwright.formats.format import Format
 from boomwright.manifest import FILE as MANIFEST_FILE
 from boomwright.manifest import Manifest, read_manifest, sum_of
 from boomwright.parts.catalogue import PARTS
-from boomwright.pieces import Expectation
+from boomwright.pieces import Expectation, Probe
 from boomwright.plan.plan import Plan, make_plan
 from boomwright.shop.tomlfile import load_shop
 
@@ -68,9 +70,10 @@ class Finding:
 
 @dataclass(frozen=True)
 class Audit:
-    """All findings of a folder."""
+    """All findings of a folder, and what the electrical read-back found (None = it never came to that)."""
 
     findings: tuple[Finding, ...]
+    electrical: Electrical | None = None
 
     @property
     def ok(self) -> bool:
@@ -84,7 +87,9 @@ class Audit:
 
     def as_json(self) -> str:
         """The report as `audit.json` holds it."""
-        document = {"ok": self.ok, "findings": [finding.as_json() for finding in self.findings]}
+        document: dict[str, Any] = {"ok": self.ok, "findings": [finding.as_json() for finding in self.findings]}
+        if self.electrical is not None:
+            document["electrical"] = self.electrical.as_json()
         return json.dumps(document, indent=1, ensure_ascii=True, allow_nan=False) + "\n"
 
 
@@ -106,8 +111,11 @@ def audit_folder(folder: Path) -> Audit:
         file = next((f.file for f in getattr(error, "faults", ()) if f.file), DESIGN_FILE)
         return Audit((*findings, _broken(Path(file).name, "readable", str(error))))
     findings += _plan_findings(plan, manifest)
-    findings += _Bench(folder).judge(_expectations(plan, manifest))
-    return Audit(tuple(findings))
+    bench = _Bench(folder)
+    findings += bench.judge(_expectations(plan, manifest))
+    solved = read_back(plan.design, lambda probe: bench.measure(electrical.FILE, probe))
+    findings += _electrical_findings(solved)
+    return Audit(tuple(findings), solved)
 
 
 def _expectations(plan: Plan, manifest: Manifest) -> Iterable[Expectation]:
@@ -144,6 +152,14 @@ def _plan_findings(plan: Plan, manifest: Manifest) -> Iterable[Finding]:
         yield Finding(DESIGN_FILE, f"part {name}", "made", "left out", 0.0, "", False)
 
 
+def _electrical_findings(found: Electrical) -> Iterable[Finding]:
+    if found.reason:
+        yield _broken(electrical.FILE, "conductors read back and solved", found.reason)
+    for each in found.comparisons:
+        expected, measured = round(each.design, DIGITS), round(each.from_file, DIGITS)
+        yield Finding(electrical.FILE, each.what, expected, measured, each.allowed, each.unit, each.ok)
+
+
 class _Bench:
     """Opens each file once and measures it as often as asked."""
 
@@ -160,9 +176,7 @@ class _Bench:
     def _judge_one(self, e: Expectation) -> Finding:
         expected = round(e.expected, DIGITS)
         try:
-            reading = self._read(e.file)
-            also = [self._read(path) for path in e.probe.also]
-            measured = float(self._format(e.file).measure(reading, e.probe, also))
+            measured = self.measure(e.file, e.probe)
         except MeasureError as error:
             return Finding(e.file, e.what, expected, None, e.allowed, e.unit, False, str(error))
         if not math.isfinite(measured):
@@ -171,6 +185,12 @@ class _Bench:
         high = e.rule == "at_least" or measured <= e.expected + e.allowed
         # A zero that came out as -0.0 must not change the report's bytes.
         return Finding(e.file, e.what, expected, round(measured, DIGITS) + 0.0, e.allowed, e.unit, low and high)
+
+    def measure(self, file: str, probe: Probe) -> float:
+        """One quantity of one file; MeasureError when the file shows no such thing."""
+        reading = self._read(file)
+        also = [self._read(path) for path in probe.also]
+        return float(self._format(file).measure(reading, probe, also))
 
     def _format(self, path: str) -> Format:
         suffix = Path(path).suffix

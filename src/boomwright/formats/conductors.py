@@ -51,6 +51,7 @@ def measure_driven(reading: StepReading, arguments: Mapping[str, Any], also: Seq
     spacing_mm          between the fed conductor's axis and the farthest one parallel to it
     drop_mm             fed conductor's axis below z = 0
     perimeter_mm        closed centreline of a loop, gap included
+    bend_radius_mm      inside, of the widest bend
     extent_z_mm         overall height
     volume_mm3          of the metal
     """
@@ -83,6 +84,7 @@ def _of_wire(body: ReadBody, quantity: str) -> float:
         "gap_mm": high_end.centre[1] - low_end.centre[1],
         "spacing_mm": across,
         "perimeter_mm": 4.0 * across - (8.0 - 2.0 * math.pi) * max(bends, default=0.0),
+        "bend_radius_mm": max(bends, default=fed.radius_mm) - fed.radius_mm,
     }
     return float(_of(values, quantity, "driven element"))
 
