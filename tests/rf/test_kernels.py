@@ -79,7 +79,7 @@ def test_rules_take_the_logarithm():
 
 @pytest.mark.parametrize("rule", [self_rule(), corner_rule(), smooth_rule(3)], ids=["self", "corner", "smooth"])
 def test_moments_sum_to_the_area(rule):
-    moments = rule.moments().sum(axis=1)
+    moments = rule.moments.sum(axis=1)
     assert moments[4] == pytest.approx(1.0, rel=1e-6)
     assert moments[:4].sum() == pytest.approx(1.0, rel=1e-6)
 

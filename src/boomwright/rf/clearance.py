@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from functools import lru_cache
 from itertools import combinations
 
 import numpy as np
@@ -18,11 +19,16 @@ def axis_distance_m(first: Conductor, second: Conductor) -> float:
     if isinstance(first, Rod) and isinstance(second, Rod):
         return math.hypot(first.at_m - second.at_m, first.height_m - second.height_m)
     if isinstance(first, Rod):
-        return _rod_distance_m(first, outline(second).points()) if not isinstance(second, Rod) else math.nan
+        return _rod_distance_m(first, _axis(second)) if not isinstance(second, Rod) else math.nan
     if isinstance(second, Rod):
-        return _rod_distance_m(second, outline(first).points())
-    one, two = outline(first).points(), outline(second).points()
+        return _rod_distance_m(second, _axis(first))
+    one, two = _axis(first), _axis(second)
     return float(np.sqrt(((one[:, None, :] - two[None, :, :]) ** 2).sum(axis=-1)).min())
+
+
+@lru_cache(maxsize=64)
+def _axis(conductor: Folded | Loop) -> Floats:
+    return outline(conductor).points()
 
 
 def _rod_distance_m(rod: Rod, points: Floats) -> float:
@@ -38,7 +44,8 @@ def thickest_m(conductor: Conductor) -> float:
     return max(conductor.radius_m, other_m or 0.0) + coat_m
 
 
-def spacings(wires: Wires) -> list[tuple[str, str, float, float, float]]:
+@lru_cache(maxsize=16)
+def spacings(wires: Wires) -> tuple[tuple[str, str, float, float, float], ...]:
     """Every pair of conductors: tags, axis distance, and the two radii [m]; a closed one with itself too."""
     found = []
     for first, second in combinations(wires.conductors, 2):
@@ -49,7 +56,7 @@ def spacings(wires: Wires) -> list[tuple[str, str, float, float, float]]:
             other_m = conductor.other_radius_m if isinstance(conductor, Folded) else None
             radii = (conductor.radius_m, other_m or conductor.radius_m)
             found.append((conductor.tag, conductor.tag, facing_m(conductor), *radii))
-    return found
+    return tuple(found)
 
 
 def least_spacing_radii(wires: Wires) -> float:

@@ -74,7 +74,7 @@ def rings(mesh: Mesh, elements: Integers, places: Floats) -> Rings:
     travel = mesh.travel_m[elements] * places
     turn = mesh.bend_rad_m[elements] * travel
     tangent, normal = mesh.tangent[elements], mesh.normal[elements]
-    radius = mesh.radius_m[elements, 0] + (mesh.radius_m[elements, 1] - mesh.radius_m[elements, 0]) * places
+    radius = radius_at(mesh, elements, places)
     if not turn.any():
         centre = mesh.start[elements] + travel[..., None] * tangent
         everywhere = (*turn.shape, 3)
@@ -86,6 +86,13 @@ def rings(mesh: Mesh, elements: Integers, places: Floats) -> Rings:
     return Rings(centre, tangent * cosine + normal * sine, normal * cosine - tangent * sine, radius)
 
 
+def radius_at(mesh: Mesh, elements: Integers, places: Floats) -> Floats:
+    """Ring radius [m] at `places` (0 to 1) of the given elements; broadcast."""
+    start = mesh.radius_m[elements, 0]
+    radius: Floats = start + (mesh.radius_m[elements, 1] - start) * places
+    return radius
+
+
 def plain_shapes(mesh: Mesh, elements: Integers, places: Floats) -> tuple[tuple[Floats, Floats], Floats]:
     """The m = 0 hats of elements' starts and ends at `places`, and the share of charge there; all broadcast.
 
@@ -93,7 +100,7 @@ def plain_shapes(mesh: Mesh, elements: Integers, places: Floats) -> tuple[tuple[
     radius, so that the charge is even over the face and finite on the axis.
     """
     start, end = mesh.radius_m[elements, 0], mesh.radius_m[elements, 1]
-    here = start + (end - start) * places
+    here = radius_at(mesh, elements, places)
     rising = places * (start + here) / (start + end)
     return (1.0 - rising, rising), 2.0 * here / (start + end)
 

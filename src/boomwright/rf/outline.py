@@ -38,7 +38,7 @@ class Outline:
         """Length of the half along its axis [m]."""
         return sum(stretch.length_m for stretch in self.stretches)
 
-    def points(self, count: int = 1000) -> Floats:
+    def points(self, count: int = 400) -> Floats:
         """Points on the axis, `count` in each stretch, (stretches * count, 3) [m]."""
         aside = np.array(self.normal)
         forward = np.array([0.0, 1.0, 0.0])

@@ -13,7 +13,7 @@ import numpy as np
 
 from boomwright.rf.arrays import Complexes, Floats, Integers, Numbers
 from boomwright.rf.kernels import dynamic_ring_kernels, static_ring_kernels
-from boomwright.rf.mesh import Mesh, Rings, plain_shapes, rings
+from boomwright.rf.mesh import Mesh, Rings, plain_shapes, radius_at, rings
 from boomwright.rf.quadrature import PairRule, corner_rule, from_start, self_rule, smooth_rule
 
 FAR_SIZES = 1.5
@@ -109,11 +109,17 @@ def _from_end() -> PairRule:
 
 def element_gaps(mesh: Mesh, mirrored: bool) -> tuple[Floats, Floats]:
     """Least distance between the ends of two elements' generating lines [m], and the larger one's size [m]; (E, E)."""
-    ends = rings(mesh, np.arange(mesh.elements)[:, None], np.array([0.0, 1.0]))
-    flip = np.array([1.0, -1.0 if mirrored else 1.0, 1.0])
-    across = ends.centre[:, None, :, None, :] - (ends.centre * flip)[None, :, None, :, :]
-    radial = ends.radius_m[:, None, :, None] - ends.radius_m[None, :, None, :]
-    distance = np.sqrt((across**2).sum(axis=-1) + radial**2)
+    places = np.arange(mesh.elements)[:, None], np.array([0.0, 1.0])
+    radius = radius_at(mesh, *places)
+    if mesh.closed:
+        centre = rings(mesh, *places).centre
+        flip = np.array([1.0, -1.0 if mirrored else 1.0, 1.0])
+        across = ((centre[:, None, :, None, :] - (centre * flip)[None, :, None, :, :]) ** 2).sum(axis=-1)
+    else:
+        y = mesh.start[:, 1:2] + mesh.travel_m[:, None] * places[1]
+        across = (y[:, None, :, None] - (-y if mirrored else y)[None, :, None, :]) ** 2
+    radial = radius[:, None, :, None] - radius[None, :, None, :]
+    distance = np.sqrt(across + radial**2)
     size = mesh.size_m
     return distance.min(axis=(2, 3)), np.maximum(size[:, None], size[None, :])
 
@@ -123,26 +129,31 @@ class PairGeometry:
 
     def __init__(self, mesh: Mesh, pairs: PairSet) -> None:
         self.pairs = pairs
-        first = rings(mesh, pairs.first[:, None], pairs.rule.first)
-        second = rings(mesh, pairs.second[:, None], pairs.rule.second)
-        if pairs.mirrored:
-            second = _continued(second)
-        across = first.centre - second.centre
-        self.axial_m: Floats = np.sqrt((across**2).sum(axis=-1))
-        self.radius_m, self.source_radius_m = first.radius_m, second.radius_m
+        places = (pairs.first[:, None], pairs.rule.first), (pairs.second[:, None], pairs.rule.second)
+        self.radius_m, self.source_radius_m = (radius_at(mesh, *place) for place in places)
+        cosines: Floats | float = 1.0
+        if mesh.closed:
+            first, second = (rings(mesh, *place) for place in places)
+            if pairs.mirrored:
+                second = _continued(second)
+            across = first.centre - second.centre
+            self.axial_m: Floats = np.sqrt((across**2).sum(axis=-1))
+            cosines = (first.tangent * second.tangent).sum(axis=-1)
+        else:
+            y, other = (mesh.start[element, 1] + mesh.travel_m[element] * place for element, place in places)
+            self.axial_m = np.abs(y + other if pairs.mirrored else y - other)
         size = mesh.size_m
         along = mesh.travel_m / size
         outward = (mesh.radius_m[:, 1] - mesh.radius_m[:, 0]) / size
         sign = -1.0 if pairs.mirrored else 1.0
         self.sign = sign
         self.size = (size[pairs.first], size[pairs.second])
-        cosines = (first.tangent * second.tangent).sum(axis=-1)
         self.axial = (along[pairs.first] * along[pairs.second])[:, None] * cosines
         self.radial = sign * (outward[pairs.first] * outward[pairs.second])[:, None]
         self.outward = sign * outward[pairs.first][:, None], sign * outward[pairs.second][:, None]
-        self.weights = pairs.rule.moments()
-        self.hats, self.charge = plain_shapes(mesh, pairs.first[:, None], pairs.rule.first)
-        self.other_hats, self.other_charge = plain_shapes(mesh, pairs.second[:, None], pairs.rule.second)
+        self.weights = pairs.rule.moments
+        self.hats, self.charge = plain_shapes(mesh, *places[0])
+        self.other_hats, self.other_charge = plain_shapes(mesh, *places[1])
 
     def add_to(self, total: dict[str, Numbers], harmonics: Harmonics) -> None:
         """Add the integrals of these kernels (pairs, points), exchanged pairs too, to the totals by name."""

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from functools import lru_cache
+from functools import cached_property, lru_cache
 
 import numpy as np
 
@@ -20,6 +20,7 @@ class PairRule:
     second: Floats
     weight: Floats
 
+    @cached_property
     def moments(self) -> Floats:
         """Weights times the products of the two elements' end hats, and the bare weights, (5, points).
 

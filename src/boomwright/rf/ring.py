@@ -79,7 +79,7 @@ class RingAction:
         distance: Floats = np.sqrt((across**2).sum(axis=-1))
         along = ((across * one.tangent).sum(axis=-1) / distance, (across * tangent).sum(axis=-1) / distance)
         kernel = averaged_kernel(distance, wavenumber_rad_m, along, (one.radius_m, two.radius_m))
-        weights = rule.moments()
+        weights = rule.moments
         hats = (kernel * (one.tangent * tangent).sum(axis=-1)) @ weights[:4].T
         lengths = self.mesh.travel_m
         current[p, q] += (lengths[p] * lengths[q])[:, None, None] * hats.reshape(-1, 2, 2)
