@@ -37,11 +37,17 @@ SAMPLE_MARGIN_MM = 0.25
 STEP_OUT_MM = 1.0
 """How far out of the material, beyond the taper, the cavity is looked for."""
 
+NEAR_BOX_MM = 0.5
+"""How far outside the cavity's box an undercut is still seen."""
+
 FACING = 1e-6
 """A face looks along a move when its normal has at least this part of it."""
 
-POSITIONS = 24
-"""Places along a leg at which the kernel decides what the meshes suspect."""
+POSITIONS = 9
+"""Places along a leg, evenly spread, at which the kernel decides besides those that the meshes point to."""
+
+POINTED = 5
+"""Places that the meshes point to, for each obstacle: where the deepest prisms meet it."""
 
 NEAR_AXIS_MM = 0.5
 
@@ -52,8 +58,8 @@ def measure_draft(reading: StepReading, arguments: Arguments, also: Sequence[Any
     box, pull   the cavity's box, and the unit direction of the half's own way off, in the design's frame
     taper_mm    how far the draft brings the cavity's sides inside the box
 
-    Negative: an undercut. The cavity's faces are those in front of which the cavity lies: a short way out of the
-    material is well inside the box.
+    Negative: an undercut. The cavity's faces are those in or near the box in front of which it lies: a short way out
+    of the material is well inside the box.
     """
     motion = matrix_of(arguments.get("frame"))
     low, high = np.asarray(arguments["box"], dtype=float)
@@ -62,9 +68,10 @@ def measure_draft(reading: StepReading, arguments: Arguments, also: Sequence[Any
     for face in (face for body in reading.bodies for face in body.faces):
         beside = samples(face, SAMPLE_MARGIN_MM)
         outward = beside.outward @ motion[:3, :3]
-        before = (beside.points - motion[:3, 3]) @ motion[:3, :3] + (taper + STEP_OUT_MM) * outward
-        margin = taper + STEP_OUT_MM / 2.0
-        inside = np.all((before > low + margin) & (before < high - margin), axis=1)
+        points = (beside.points - motion[:3, 3]) @ motion[:3, :3]
+        before, margin = points + (taper + STEP_OUT_MM) * outward, taper + STEP_OUT_MM / 2.0
+        inside = np.all((points > low - NEAR_BOX_MM) & (points < high + NEAR_BOX_MM), axis=1)
+        inside &= np.all((before > low + margin) & (before < high - margin), axis=1)
         if inside.any():
             along = outward[inside] @ pull
             least = min(least, float(np.degrees(np.arcsin(np.clip(-along, -1.0, 1.0))).min()))
@@ -79,22 +86,22 @@ def measure_sweep(reading: StepReading, arguments: Arguments, also: Sequence[Any
     legs    moves one after the other, each [x, y, z] in the design's frame
 
     What a body passes through is the body and the prisms of those of its faces that look along the move. Meshes rule
-    out what they keep clear of by more than their chord; the kernel decides about the rest, place by place.
+    out what they keep clear of by more than their chord; about the rest the kernel decides, at the places where the
+    prisms meet the obstacle. Returns the largest overlap at any of these.
     """
-    bodies = solids_of(reading, arguments.get("frame"))
     obstacles = obstacles_of(arguments, also)
     moved, worst = np.zeros(3), 0.0
     for leg in np.asarray(arguments["legs"], dtype=float):
-        for body in bodies:
-            suspects = _suspects(body, moved, leg, obstacles)
-            for share in np.linspace(0.0, 1.0, POSITIONS) if suspects else []:
-                worst = max(worst, common_mm3(shifted(body, moved + share * leg), suspects))
+        for body in solids_of(reading, arguments.get("frame")):
+            for obstacle, shares in _suspects(body, moved, leg, obstacles):
+                for share in shares:
+                    worst = max(worst, common_mm3(shifted(body, moved + share * leg), [obstacle]))
         moved = moved + leg
     return worst
 
 
-def _suspects(body: Shape, moved: Vector, leg: Vector, obstacles: Sequence[Shape]) -> list[Shape]:
-    """The obstacles that a body, already moved, may meet on a further leg."""
+def _suspects(body: Shape, moved: Vector, leg: Vector, obstacles: Sequence[Shape]) -> list[tuple[Shape, Vector]]:
+    """The obstacles that a body, already moved, may meet on a further leg, and at which shares of it."""
     box = box_of(body) + moved
     way = (np.minimum(box[0], box[0] + leg), np.maximum(box[1], box[1] + leg))
     near = [one for one in obstacles if boxes_meet(box_of(one), way)]
@@ -103,22 +110,32 @@ def _suspects(body: Shape, moved: Vector, leg: Vector, obstacles: Sequence[Shape
     points, triangles = mesh_of(body)
     corners = (points + moved)[triangles]
     normals = np.cross(corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0])
-    looking = normals @ leg > FACING * np.linalg.norm(normals, axis=1) * np.linalg.norm(leg)
-    prisms = np.concatenate([corners[looking], corners[looking] + leg], axis=1)
-    return [one for one in near if _passes_through(prisms, one)]
+    looking = corners[normals @ leg > FACING * np.linalg.norm(normals, axis=1) * np.linalg.norm(leg)]
+    found = [(one, _meetings(looking, leg, one)) for one in near]
+    return [(one, shares) for one, shares in found if len(shares)]
 
 
-def _passes_through(prisms: Vector, obstacle: Shape) -> bool:
-    """Whether any of these prisms, each (6, 3), has room in common with an obstacle, by meshes."""
+def _meetings(corners: Vector, leg: Vector, obstacle: Shape) -> Vector:
+    """Shares of the leg at which these triangles (n, 3, 3) are inside an obstacle, by meshes; empty: never."""
     import manifold3d
 
+    prisms = np.concatenate([corners, corners + leg], axis=1)
     low, high = box_of(obstacle)
     close = np.all((prisms.min(axis=1) < high) & (prisms.max(axis=1) > low), axis=1)
     hulls = [manifold3d.Manifold.hull_points(prism) for prism in prisms[close]]
     if not hulls:
-        return False
-    swept = manifold3d.Manifold.batch_boolean(hulls, manifold3d.OpType.Add)
-    return bool((manifold_of(obstacle) ^ swept).volume() > TOUCH_MM3)
+        return np.zeros(0)
+    solid = manifold_of(obstacle)
+    if (solid ^ manifold3d.Manifold.batch_boolean(hulls, manifold3d.OpType.Add)).volume() <= TOUCH_MM3:
+        return np.zeros(0)
+    common = [solid ^ hull for hull in hulls]
+    deepest = np.argsort([-one.volume() for one in common])[:POINTED]
+    shares = list(np.linspace(0.0, 1.0, POSITIONS))
+    for index in deepest:
+        if not common[index].is_empty():
+            middle = np.reshape(common[index].bounding_box(), (2, 3)).mean(axis=0)
+            shares.append(float((middle - corners[close][index].mean(axis=0)) @ leg / (leg @ leg)))
+    return np.asarray(np.clip(shares, 0.0, 1.0), dtype=np.float64)
 
 
 def measure_solids_overlap(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:

@@ -54,6 +54,7 @@ MOUTH_SLOPE = math.tan(math.radians(40.0))
 VENT_MM = 0.75
 MOUTH_WALL_MM = 1.2
 TIP_PLAY_MM = 0.5
+TIP_RESIN_MM = 1.0
 
 
 @dataclass(frozen=True)
@@ -128,7 +129,15 @@ def _inner_half_mm(ground: Ground, pull: Pull, depth_mm: float) -> float:
         widths.append(ground.coax_y_mm + rc + wall + lean)
     elif rc:  # between funnel and vent on the far side
         widths.append(rc + clearance + ground.web_mm + 2.0 * NECK_MM + TIP_PLAY_MM + lean)
-    return max(widths)
+    return _past_a_near_tip_mm(ground.driven, max(widths))
+
+
+def _past_a_near_tip_mm(driven: Driven, half_mm: float) -> float:
+    """The half width, or more where a straight element's tip would end in the wall's first skin: then in the cavity."""
+    if driven.form != "straight" or driven.length_mm is None:
+        return half_mm
+    tip = driven.length_mm / 2.0
+    return tip + TIP_RESIN_MM if half_mm - TIP_RESIN_MM < tip < half_mm + SKIN_MM else half_mm
 
 
 def _cavity_along_z(ground: Ground, ends: Ends) -> Cavity:
