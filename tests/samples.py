@@ -7,7 +7,7 @@ from boomwright.design.model import Band, Boom, Design, Driven, Feed, Rod, Seat
 
 def rod(tag: str, at_mm: float, length_mm: float, diameter_mm: float, index: int = 0) -> Rod:
     role = "reflector" if tag == "R" else "director"
-    return Rod(tag, role, at_mm, length_mm, diameter_mm, "brass", file_index=index)
+    return Rod(tag, role, float(at_mm), float(length_mm), float(diameter_mm), "brass", file_index=index)
 
 
 GAUGE = Design(

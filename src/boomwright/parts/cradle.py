@@ -119,7 +119,7 @@ def cradle_shape(cradle: CradlePlan, offsets: Offsets = NOMINAL) -> Shape:
     parts += [_saddle(s, g) for s in cradle.saddles]
     body = unite(_base(cradle, g), parts)
     tools = [tool for saddle in cradle.saddles for tool in _tie_tools(saddle, g)]
-    tools += [tool for engraving in cradle.engravings for tool in _engraving(engraving, g)]
+    tools += [tool for engraving in cradle.engravings for tool in _engraving(engraving)]
     return cut(body, tools)
 
 
@@ -189,10 +189,11 @@ def _tie_tools(saddle: Saddle, growth_mm: float) -> list[Shape]:
     return [*tools, prism_along_y(groove, (-high, high))]
 
 
-def _engraving(engraving: Engraving, growth_mm: float) -> list[Shape]:
+def _engraving(engraving: Engraving) -> list[Shape]:
+    """Letters to be read, not to fit: drawn as they are for every printer."""
     import shapely
 
-    half = engraving.width_mm / 2.0 + growth_mm
+    half = engraving.width_mm / 2.0
     shape = shapely.union_all([_stroke(line, half) for line in engraving.lines])
     polygons = list(shape.geoms) if hasattr(shape, "geoms") else [shape]
     z = (engraving.top_mm - engraving.depth_mm, engraving.top_mm + 1.0)

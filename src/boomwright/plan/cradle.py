@@ -37,6 +37,8 @@ BEAM_MM = 10.0
 TIE_SLOT_MM = (4.2, 2.0)
 TIE_GROOVE_DEPTH_MM = 2.5
 FLOOR_MM = 1.2
+NOTCH_OVER_BASE_MM = 0.5
+"""How far the lowest V stays above the base, so that it stays whole when it is drawn lower for a printer that grows."""
 MOST_SADDLE_SPAN_MM = 250.0
 TAG_HEIGHT_MM, LEAST_TAG_HEIGHT_MM = 2.8, 1.8
 NAME_HEIGHT_MM = 3.0
@@ -181,15 +183,14 @@ def plan_cradle(design: Design, boom: Boom, shop: Shop, seat: SeatPlan) -> tuple
 
 
 def _axis_height(boom: Boom, shop: Shop, seat: SeatPlan, held: tuple[Held, ...]) -> tuple[float, list[Size]]:
-    over_tie = TIE_GROOVE_DEPTH_MM + FLOOR_MM
+    over_tie = max(TIE_GROOVE_DEPTH_MM + FLOOR_MM, BASE_MM + NOTCH_OVER_BASE_MM)
     saddle = seat.top_mm + over_tie + ((ROOT_2 - 1.0) * seat.half_width_mm if boom.section == "round" else 0.0)
     needs = {
         f"base {BASE_MM:g} + relief {shop.cradle.relief_mm:g} + boom's line {seat.top_mm:g} under the axes": (
             BASE_MM + shop.cradle.relief_mm + seat.top_mm
         ),
-        f"tie groove and floor {over_tie:g} under the saddles": saddle,
-        f"tie groove and floor {over_tie:g} under the deepest notch": over_tie
-        + ROOT_2 * max(h.radius_mm for h in held),
+        f"base and tie groove {over_tie:g} under the saddles": saddle,
+        f"base and tie groove {over_tie:g} under the deepest notch": over_tie + ROOT_2 * max(h.radius_mm for h in held),
     }
     reason = max(needs, key=lambda words: needs[words])
     height = math.ceil(needs[reason] * 2.0 - 1e-9) / 2.0
