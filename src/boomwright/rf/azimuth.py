@@ -20,12 +20,15 @@ ONE, COS, SIN, COS_COS, SIN_COS = range(5)
 
 
 @dataclass(frozen=True)
-class Term:
-    """Part of a moment: rows of the basis from `row` on, one azimuth function, values (rows, Q)."""
+class Moment:
+    """One component of what all basis functions carry: azimuth functions (F of them), values (U, F * Q)."""
 
-    row: int
-    function: int
+    functions: tuple[int, ...]
     values: Floats
+
+    def of(self, currents: Complexes) -> Complexes:
+        """The component for solved unknowns (U,): coefficients of the azimuth functions, (F, Q)."""
+        return (currents @ self.values).reshape(len(self.functions), -1)
 
 
 @dataclass(frozen=True)
@@ -35,7 +38,7 @@ class Surface:
     centre, tangent, normal, aside  (Q, 3), the last three a right-handed set of unit vectors up to sign of `aside`
     radius_m                        (Q,)
     azimuths                        number of points round each ring
-    current, charge                 terms of the moments along x, y, z [m] and of the charge
+    current, charge                 moments along x, y, z [m], and the charge
     unknowns                        U: m = 0 nodes, then for each family m = 1 nodes and elements
     """
 
@@ -44,8 +47,8 @@ class Surface:
     aside: Floats
     radius_m: Floats
     azimuths: int
-    current: tuple[tuple[Term, ...], ...]
-    charge: tuple[Term, ...]
+    current: tuple[Moment, ...]
+    charge: Moment
     unknowns: int
 
     def points(self, half: bool = False) -> Floats:
@@ -91,7 +94,7 @@ def surface(mesh: Mesh, azimuths: int, families: int, nearest_m: float = 0.0) ->
     inside[element, column] = span
     inside = inside @ chosen.shares
     hats, slopes = (value * span) @ chosen.shares, (slope * weight) @ chosen.shares
-    charge = [Term(0, ONE, slopes)]
+    charge = [(0, {ONE: slopes})]
     around = inside * at.radius_m
     unknowns = keep + families * (keep + mesh.elements)
     # (row, moments along tangent, normal, aside): {azimuth function: values}
@@ -115,24 +118,37 @@ def surface(mesh: Mesh, azimuths: int, families: int, nearest_m: float = 0.0) ->
             else ({SIN_COS: around}, {COS_COS: -around})
         )
         local.append((row + keep, ({}, *turning)))
-        charge += [Term(row, pair[0], slopes), Term(row + keep, pair[0], inside)]
+        charge += [(row, {pair[0]: slopes}), (row + keep, {pair[0]: inside})]
     frame = (at.tangent, at.normal, aside)
-    current = tuple(_component(local, frame, axis) for axis in range(3))
-    return Surface(at.centre, at.normal, aside, at.radius_m, azimuths, current, tuple(charge), unknowns)
+    current = tuple(_moment(_along(local, frame, axis), unknowns) for axis in range(3))
+    return Surface(at.centre, at.normal, aside, at.radius_m, azimuths, current, _moment(charge, unknowns), unknowns)
 
 
-def _component(
+def _along(
     local: list[tuple[int, tuple[dict[int, Floats], ...]]], frame: tuple[Floats, ...], axis: int
-) -> tuple[Term, ...]:
-    terms = []
+) -> list[tuple[int, dict[int, Floats]]]:
+    """Moments in the rings' own frames turned into one component, by first row and azimuth function."""
+    turned = []
     for row, moments in local:
         gathered: dict[int, Floats] = {}
         for vector, parts in zip(frame, moments, strict=True):
             for function, values in parts.items():
                 part = values * vector[:, axis]
                 gathered[function] = gathered[function] + part if function in gathered else part
-        terms += [Term(row, function, values) for function, values in gathered.items() if values.any()]
-    return tuple(terms)
+        turned.append((row, gathered))
+    return turned
+
+
+def _moment(parts: list[tuple[int, dict[int, Floats]]], unknowns: int) -> Moment:
+    """Parts gathered over all unknowns; azimuth functions that carry nothing are left out."""
+    found = sorted({function for _, terms in parts for function, values in terms.items() if values.any()})
+    columns = next(iter(parts[0][1].values())).shape[1]
+    total = np.zeros((unknowns, len(found), columns))
+    for row, terms in parts:
+        for function, values in terms.items():
+            if function in found:
+                total[row : row + len(values), found.index(function)] += values
+    return Moment(tuple(found), total.reshape(unknowns, -1))
 
 
 PointMask = np.ndarray[tuple[int, ...], np.dtype[np.bool_]]
@@ -182,22 +198,20 @@ def _point_waves(first: Floats, second: Floats, wavenumber_rad_m: float) -> Comp
 
 
 def _contracted(waves: Complexes, weights: tuple[Floats, Floats]) -> Complexes:
-    """Azimuths contracted with the azimuth functions: (5, 5, Q1, Q2)."""
+    """Azimuths contracted with the azimuth functions: (5, Q1, 5, Q2)."""
     rings_first, _, rings_second, points = waves.shape
     inner = waves.reshape(-1, points) @ weights[1].T.astype(np.complex128)
     inner = inner.reshape(rings_first, -1, rings_second * 5).transpose(1, 0, 2).reshape(weights[0].shape[1], -1)
     outer = weights[0].astype(np.complex128) @ inner
-    result: Complexes = np.ascontiguousarray(outer.reshape(5, rings_first, rings_second, 5).transpose(0, 3, 1, 2))
-    return result
+    return outer.reshape(5, rings_first, rings_second, 5).transpose(0, 1, 3, 2)
 
 
-def _add(total: Complexes, left: tuple[Term, ...], kernels: Complexes, right: tuple[Term, ...], scale: float) -> None:
-    """Add scale * left @ kernel @ right.T, term by term, to the block."""
-    for one in left:
-        for two in right:
-            kernel = kernels[one.function, two.function]
-            part = np.empty((len(one.values), len(two.values)), dtype=np.complex128)
-            part.real = one.values @ kernel.real @ two.values.T
-            part.imag = one.values @ kernel.imag @ two.values.T
-            rows, columns = len(one.values), len(two.values)
-            total[one.row : one.row + rows, two.row : two.row + columns] += scale * part
+def _add(total: Complexes, left: Moment, kernels: Complexes, right: Moment, scale: float) -> None:
+    """Add scale * left @ kernel @ right.T to the block."""
+    if not left.functions or not right.functions:
+        return
+    kernel = kernels[list(left.functions)][:, :, list(right.functions)]
+    kernel = kernel.reshape(left.values.shape[1], right.values.shape[1])
+    turned = scale * right.values.T
+    total.real += left.values @ kernel.real @ turned
+    total.imag += left.values @ kernel.imag @ turned

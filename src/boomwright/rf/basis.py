@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
@@ -61,15 +62,24 @@ class Piece:
     conductor: Conductor
     parts: tuple[Floats, ...]
     mesh: Mesh
-    samples: Samples
     surface: Surface | None
-    own_samples: Samples
     own_surface: Surface | None
+    nearest_m: float
 
     @property
     def nodes(self) -> int:
         """Number of m = 0 unknowns."""
-        return int(self.samples.charge.shape[0])
+        return self.mesh.elements + (1 if self.mesh.closed else 0)
+
+    @cached_property
+    def samples(self) -> Samples:
+        """Rings through which the conductor meets the others, m = 0."""
+        return sample(self.mesh, self.nearest_m)
+
+    @cached_property
+    def own_samples(self) -> Samples:
+        """Rings through which a closed conductor meets itself, m = 0."""
+        return sample(self.mesh)
 
     @property
     def unknowns(self) -> int:
@@ -154,12 +164,12 @@ class Planner:
 
     def _piece_of(self, conductor: Conductor, parts: tuple[Floats, ...]) -> Piece:
         mesh, mode = build(conductor, parts), self.mode
-        samples = sample(mesh, self.spacing_m[conductor.tag])
+        nearest_m = self.spacing_m[conductor.tag]
         skin = surface(mesh, mode.azimuths, mode.families, self.gap_m[conductor.tag]) if mode.families else None
         if isinstance(conductor, Rod):
-            return Piece(conductor, parts, mesh, samples, skin, samples, skin)
+            return Piece(conductor, parts, mesh, skin, skin, nearest_m)
         own_skin = surface(mesh, mode.azimuths, mode.families) if mode.families else None
-        return Piece(conductor, parts, mesh, samples, skin, sample(mesh), own_skin)
+        return Piece(conductor, parts, mesh, skin, own_skin, nearest_m)
 
 
 def planner_of(wires: Wires, frequency_hz: float, options: Options) -> Planner:

@@ -72,7 +72,8 @@ def own_action(piece: Piece, mode: Mode) -> OwnAction | RingAction:
     """The integrals of one conductor with itself, ready for any frequency."""
     if isinstance(piece.conductor, Rod):
         return OwnAction(piece.mesh, azimuthal=mode.families > 0)
-    return RingAction(piece.mesh, piece.own_samples, piece.own_surface, mode.families)
+    samples = piece.own_samples if piece.own_surface is None else None
+    return RingAction(piece.mesh, samples, piece.own_surface, mode.families)
 
 
 def own_block(piece: Piece, action: OwnAction | RingAction, frequency_hz: float, mode: Mode) -> Complexes:

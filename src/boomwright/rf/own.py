@@ -20,6 +20,9 @@ FAR_SIZES = 1.5
 AZIMUTHS_PLAIN = 2
 AZIMUTHS_FULL = 5
 
+EXCHANGED = [0, 2, 1, 3, 4, 5, 7, 6, 8, 9, 10, 13, 14, 11, 12]
+"""Rows of `PairGeometry.plain` and `.varying` when the elements of a pair change places."""
+
 Harmonics = tuple[Numbers, Numbers, Numbers]
 
 
@@ -125,84 +128,101 @@ def element_gaps(mesh: Mesh, mirrored: bool) -> tuple[Floats, Floats]:
 
 
 class PairGeometry:
-    """Rings and direction factors at the points of one pair set; kernels come in, moments go out."""
+    """All points of some pair sets in one row: rings and direction factors there; kernels come in, moments go out.
 
-    def __init__(self, mesh: Mesh, pairs: PairSet) -> None:
-        self.pairs = pairs
-        places = (pairs.first[:, None], pairs.rule.first), (pairs.second[:, None], pairs.rule.second)
-        self.radius_m, self.source_radius_m = (radius_at(mesh, *place) for place in places)
+    Points of a pair stand together, pairs in the order of the sets; P points.
+    """
+
+    def __init__(self, mesh: Mesh, sets: list[PairSet]) -> None:
+        counts = [len(pairs.first) for pairs in sets]
+        self.first = np.concatenate([pairs.first for pairs in sets])
+        self.second = np.concatenate([pairs.second for pairs in sets])
+        self.sign = np.repeat([-1.0 if pairs.mirrored else 1.0 for pairs in sets], counts)
+        points = np.repeat([len(pairs.rule.weight) for pairs in sets], counts)
+        self.starts = np.concatenate([[0], np.cumsum(points)[:-1]])
+        self.weight = np.concatenate([np.tile(s.rule.weight, n) for n, s in zip(counts, sets, strict=True)])
+        place = np.concatenate([np.tile(s.rule.first, n) for n, s in zip(counts, sets, strict=True)])
+        other = np.concatenate([np.tile(s.rule.second, n) for n, s in zip(counts, sets, strict=True)])
+        element, source = np.repeat(self.first, points), np.repeat(self.second, points)
+        sign = np.repeat(self.sign, points)
+        self.radius_m, self.source_radius_m = radius_at(mesh, element, place), radius_at(mesh, source, other)
         cosines: Floats | float = 1.0
         if mesh.closed:
-            first, second = (rings(mesh, *place) for place in places)
-            if pairs.mirrored:
-                second = _continued(second)
-            across = first.centre - second.centre
-            self.axial_m: Floats = np.sqrt((across**2).sum(axis=-1))
-            cosines = (first.tangent * second.tangent).sum(axis=-1)
+            one, two = rings(mesh, element, place), _continued(rings(mesh, source, other), sign)
+            self.axial_m: Floats = np.sqrt(((one.centre - two.centre) ** 2).sum(axis=-1))
+            cosines = (one.tangent * two.tangent).sum(axis=-1)
         else:
-            y, other = (mesh.start[element, 1] + mesh.travel_m[element] * place for element, place in places)
-            self.axial_m = np.abs(y + other if pairs.mirrored else y - other)
+            y = mesh.start[element, 1] + mesh.travel_m[element] * place
+            self.axial_m = np.abs(y - sign * (mesh.start[source, 1] + mesh.travel_m[source] * other))
         size = mesh.size_m
-        along = mesh.travel_m / size
-        outward = (mesh.radius_m[:, 1] - mesh.radius_m[:, 0]) / size
-        sign = -1.0 if pairs.mirrored else 1.0
-        self.sign = sign
-        self.size = (size[pairs.first], size[pairs.second])
-        self.axial = (along[pairs.first] * along[pairs.second])[:, None] * cosines
-        self.radial = sign * (outward[pairs.first] * outward[pairs.second])[:, None]
-        self.outward = sign * outward[pairs.first][:, None], sign * outward[pairs.second][:, None]
-        self.weights = pairs.rule.moments
-        self.hats, self.charge = plain_shapes(mesh, *places[0])
-        self.other_hats, self.other_charge = plain_shapes(mesh, *places[1])
+        self.area = size[self.first] * size[self.second]
+        along, outward = mesh.travel_m / size, (mesh.radius_m[:, 1] - mesh.radius_m[:, 0]) / size
+        self.axial = along[element] * along[source] * cosines
+        self.radial = sign * outward[element] * outward[source]
+        self.outward = sign * outward[element], sign * outward[source]
+        self.linear = (1.0 - place, place), (1.0 - other, other)
+        self.hats, self.charge = plain_shapes(mesh, element, place)
+        self.other_hats, self.other_charge = plain_shapes(mesh, source, other)
 
-    def add_to(self, total: dict[str, Numbers], harmonics: Harmonics) -> None:
-        """Add the integrals of these kernels (pairs, points), exchanged pairs too, to the totals by name."""
-        g0, g1, g2 = harmonics
-        area = (self.size[0] * self.size[1])[:, None]
-        rule, where = self.pairs.rule, (self.pairs.first, self.pairs.second)
-        hats, constant = self.weights[:4].T, self.weights[4]
-        weighted = (self.axial * g0 + self.radial * g1) * rule.weight
-        plain = [((weighted * one) * two).sum(axis=1) for one in self.hats for two in self.other_hats]
-        self._put(total["current0"], area * np.column_stack(plain))
-        self._put(total["charge0"], self.sign * ((g0 * self.charge * self.other_charge) @ rule.weight))
-        if "current1" not in total:
-            return
-        even, odd = (g0 + g2) / 2.0, (g0 - g2) / 2.0
-        self._put(total["current1"], 0.5 * area * ((self.axial * g1 + self.radial * even) @ hats))
-        self._put(total["charge1"], 0.5 * self.sign * (g1 @ constant))
-        around = self.radius_m * self.source_radius_m * even
-        self._put(total["around1"], 0.5 * self.sign * area[:, 0] * (around @ constant))
-        first_hat = np.array([1.0 - rule.first, rule.first]) * rule.weight
-        second_hat = np.array([1.0 - rule.second, rule.second]) * rule.weight
-        total["mixed1"][where] += -0.5 * area * ((self.outward[0] * self.source_radius_m * odd) @ first_hat.T)
-        apart = where[0] != where[1]
-        exchanged = -0.5 * area * ((self.outward[1] * self.radius_m * odd) @ second_hat.T)
-        total["mixed1"][where[1][apart], where[0][apart]] += exchanged[apart]
+    def plain(self, g0: Numbers, g1: Numbers) -> Numbers:
+        """Pair integrals of m = 0 with kernels (P,): four products of hats, then the charge; (5, pairs)."""
+        weighted = self.weight * (self.axial * g0 + self.radial * g1)
+        ends = [weighted * hat for hat in self.hats]
+        rows = [end * hat for end in ends for hat in self.other_hats]
+        sums = np.add.reduceat(
+            np.array([*rows, self.weight * g0 * self.charge * self.other_charge]), self.starts, axis=1
+        )
+        sums[:4] *= self.area
+        sums[4] *= self.sign
+        return sums
 
-    def _put(self, total: Numbers, values: Numbers) -> None:
-        """Add values (pairs,) or (pairs, 4) at the pairs, and transposed at the exchanged pairs."""
-        first, second = self.pairs.first, self.pairs.second
-        apart = first != second
-        if values.ndim == 1:
+    def varying(self, g0: Numbers, g1: Numbers, g2: Numbers) -> Numbers:
+        """Pair integrals of m = 1, (10, pairs): four products of hats, charge, azimuthal, hats with azimuthal.
+
+        The last four rows are the first element's two hats with the second's azimuthal current, then the reverse.
+        """
+        even, odd = self.weight * (g0 + g2) / 2.0, self.weight * (g0 - g2) / 2.0
+        weighted = self.weight * g1
+        ends = [(self.axial * weighted + self.radial * even) * hat for hat in self.linear[0]]
+        rows = [end * hat for end in ends for hat in self.linear[1]]
+        rows += [weighted, self.radius_m * self.source_radius_m * even]
+        rows += [-self.outward[0] * self.source_radius_m * odd * hat for hat in self.linear[0]]
+        rows += [-self.outward[1] * self.radius_m * odd * hat for hat in self.linear[1]]
+        sums = 0.5 * np.add.reduceat(np.array(rows), self.starts, axis=1)
+        sums[:4] *= self.area
+        sums[4] *= self.sign
+        sums[5] *= self.sign * self.area
+        sums[6:] *= self.area
+        return sums
+
+    def moments(self, harmonics: Harmonics, elements: int, azimuthal: bool) -> Moments:
+        """Integrals of these kernels (P,) between all elements, exchanged pairs too."""
+        rows = self.plain(harmonics[0], harmonics[1])
+        if azimuthal:
+            rows = np.concatenate([rows, self.varying(*harmonics)])
+        spread = self._spread(rows, elements)
+        current, charge = spread[:, :, :4].reshape(elements, elements, 2, 2), spread[:, :, 4]
+        if not azimuthal:
+            return Moments(current, charge)
+        varying = spread[:, :, 5:9].reshape(elements, elements, 2, 2)
+        return Moments(current, charge, varying, spread[:, :, 9], spread[:, :, 10], spread[:, :, 11:13])
+
+    def _spread(self, rows: Numbers, elements: int) -> Numbers:
+        """Rows (n, pairs) at their pairs, and at the exchanged pairs in the order that exchange gives; (E, E, n)."""
+        total = np.zeros((elements, elements, len(rows)), dtype=rows.dtype)
+        order = EXCHANGED[: len(rows)]
+        for part in (self.sign > 0.0, self.sign < 0.0):
+            first, second, values = self.first[part], self.second[part], rows[:, part].T
             total[first, second] += values
-            total[second[apart], first[apart]] += values[apart]
-            return
-        square = values.reshape(-1, 2, 2)
-        total[first, second] += square
-        total[second[apart], first[apart]] += square[apart].transpose(0, 2, 1)
+            apart = first != second
+            total[second[apart], first[apart]] += values[apart][:, order]
+        return total
 
 
-def _continued(source: Rings) -> Rings:
-    """Mirror image in y = 0, its axis directed so that the conductor runs on across the plane."""
-    flip = np.array([1.0, -1.0, 1.0])
-    return Rings(source.centre * flip, source.tangent * -flip, source.normal * flip, source.radius_m)
-
-
-def _empty(elements: int, azimuthal: bool, kind: type) -> dict[str, Numbers]:
-    shapes = {"current0": (2, 2), "charge0": ()}
-    if azimuthal:
-        shapes |= {"current1": (2, 2), "charge1": (), "around1": (), "mixed1": (2,)}
-    return {name: np.zeros((elements, elements, *tail), dtype=kind) for name, tail in shapes.items()}
+def _continued(source: Rings, sign: Floats) -> Rings:
+    """Rings where sign is 1; where it is -1 their mirror images in y = 0, the axis running on across the plane."""
+    flip = np.where(sign[:, None] < 0.0, np.array([1.0, -1.0, 1.0]), 1.0)
+    return Rings(source.centre * flip, source.tangent * flip * sign[:, None], source.normal * flip, source.radius_m)
 
 
 class OwnAction:
@@ -214,32 +234,25 @@ class OwnAction:
         if wanted is None:
             wanted = np.ones((2, mesh.elements, mesh.elements), dtype=bool)
         self.mesh, self.azimuthal, self.wanted = mesh, azimuthal, wanted
-        self.static: Moments = self._static()
-        self._smooth: list[PairGeometry] | None = None
-
-    def _static(self) -> Moments:
-        total = _empty(self.mesh.elements, self.azimuthal, float)
-        for pairs in pair_sets(self.mesh, self.wanted):
-            geometry = PairGeometry(self.mesh, pairs)
-            harmonics = static_ring_kernels(geometry.axial_m, geometry.radius_m, geometry.source_radius_m)
-            geometry.add_to(total, harmonics)
-        return Moments(**total)
+        geometry = PairGeometry(mesh, pair_sets(mesh, wanted))
+        harmonics = static_ring_kernels(geometry.axial_m, geometry.radius_m, geometry.source_radius_m)
+        self.static: Moments = geometry.moments(harmonics, mesh.elements, azimuthal)
+        self._smooth: PairGeometry | None = None
 
     def dynamic(self, wavenumber_rad_m: float) -> Moments:
         """Integrals of the kernel's dynamic rest at k [rad/m]."""
         if self._smooth is None:
-            self._smooth = []
+            sets = []
             for mirrored in (False, True):
                 first, second = np.nonzero(np.triu(self.wanted[int(mirrored)]))
-                self._smooth.append(PairGeometry(self.mesh, PairSet(first, second, mirrored, smooth_rule(2))))
-        total = _empty(self.mesh.elements, self.azimuthal, complex)
+                sets.append(PairSet(first, second, mirrored, smooth_rule(2)))
+            self._smooth = PairGeometry(self.mesh, sets)
+        geometry = self._smooth
         azimuths = AZIMUTHS_FULL if self.azimuthal else AZIMUTHS_PLAIN
-        for geometry in self._smooth:
-            rest = dynamic_ring_kernels(
-                geometry.axial_m, geometry.radius_m, geometry.source_radius_m, wavenumber_rad_m, azimuths
-            )
-            geometry.add_to(total, rest)
-        return Moments(**total)
+        rest = dynamic_ring_kernels(
+            geometry.axial_m, geometry.radius_m, geometry.source_radius_m, wavenumber_rad_m, azimuths
+        )
+        return geometry.moments(rest, self.mesh.elements, self.azimuthal)
 
 
 def block(mesh: Mesh, moments: Moments, wavenumber_rad_m: float, families: int = 0) -> Complexes:

@@ -61,10 +61,8 @@ def _surface_sources(piece: Piece, currents: Complexes) -> Sources:
     functions = azimuth_functions(surface.azimuths)
     points = surface.points()
     moment = np.zeros(points.shape, dtype=np.complex128)
-    for axis, terms in enumerate(surface.current):
-        for term in terms:
-            share = currents[term.row : term.row + len(term.values)] @ term.values
-            moment[:, :, axis] += share[:, None] * functions[term.function]
+    for axis, part in enumerate(surface.current):
+        moment[:, :, axis] = part.of(currents).T @ functions[list(part.functions)]
     count = points.shape[0] * points.shape[1]
     # A point has no azimuth mean to take: radius 0.
     return Sources(points.reshape(-1, 3), moment.reshape(-1, 3), np.zeros((count, 3)), np.zeros(count))
@@ -257,8 +255,6 @@ def pattern_vector(piece: Piece, direction: Floats, wavenumber_rad_m: float) -> 
             continue
         functions = azimuth_functions(surface.azimuths)
         waves = np.exp(1j * k * surface.points() @ toward) @ functions.T
-        for axis, terms in enumerate(surface.current):
-            for term in terms:
-                rows = slice(term.row, term.row + len(term.values))
-                vector[rows, axis] += parity[axis] * (term.values @ waves[:, term.function])
+        for axis, part in enumerate(surface.current):
+            vector[:, axis] += parity[axis] * (part.values @ waves[:, list(part.functions)].T.ravel())
     return vector

@@ -21,7 +21,7 @@ Mask = np.ndarray[tuple[int, ...], np.dtype[np.bool_]]
 class RingAction:
     """Integrals of a closed conductor with itself and its image, prepared once, taken at any wavenumber."""
 
-    def __init__(self, mesh: Mesh, samples: Samples, surface: Surface | None, families: int) -> None:
+    def __init__(self, mesh: Mesh, samples: Samples | None, surface: Surface | None, families: int) -> None:
         self.mesh, self.samples, self.surface, self.families = mesh, samples, surface, families
         near = np.array([_near(mesh, mirrored) for mirrored in (False, True)])
         self.chord = OwnAction(mesh, surface is not None, near)
@@ -45,7 +45,7 @@ class RingAction:
         total = block(self.mesh, moments, wavenumber_rad_m, self.families)
         if self.surface is not None:
             total += surface_coupling(self.surface, self.surface, wavenumber_rad_m, self.families == 1, self.apart)
-        else:
+        elif self.samples is not None:
             count = self.mesh.elements
             current = np.zeros((count, count, 2, 2), dtype=np.complex128)
             charge = np.zeros((count, count), dtype=np.complex128)
