@@ -16,6 +16,7 @@ from boomwright.parts.solids import (
     prism_along_y,
     prism_along_z,
 )
+from boomwright.plan.cavity import Pull
 from boomwright.plan.compensation import NOMINAL, Offsets
 from boomwright.plan.mould_plan import BoomChannel, Half, MouldPlan, Opening
 from boomwright.plan.parting import PRY_DEPTH_MM, SOCKET_SPARE_MM, Notch, Pin
@@ -34,7 +35,7 @@ def half_shape(mould: MouldPlan, half: Half, offsets: Offsets = NOMINAL) -> Shap
     """One half in the design's frame, drawn with these offsets."""
     growth, widening = offsets.outline_growth_mm, offsets.hole_shrink_mm / 2.0
     blank = _blank_along_z(mould, half, growth) if mould.pull == "z" else _blank_along_x(mould, half, growth)
-    tools = [cavity_shape(mould, growth), boom_channel(mould.boom, mould.clearance_mm + widening)]
+    tools = [cavity_shape(mould, growth), boom_channel(mould.boom, mould.clearance_mm, widening, mould.pull)]
     tools += [conductor(runs, mould.conductor_channel_mm + widening) for runs in mould.conductors]
     if mould.coax is not None:
         start, end = mould.coax.start, mould.coax.end
@@ -101,14 +102,18 @@ def cavity_shape(mould: MouldPlan, growth_mm: float = 0.0) -> Shape:
     return prism_along_y(in_xz, (y0, y1)).intersect(prism_along_z(in_xy, (z0, z1)))
 
 
-def boom_channel(channel: BoomChannel, clearance_mm: float) -> Shape:
-    """The boom's outline widened by a clearance, drawn out along x; open: straight sides from the axis on."""
+def boom_channel(channel: BoomChannel, clearance_mm: float, widening_mm: float, printed_along: Pull) -> Shape:
+    """The boom's outline widened by a clearance, drawn out along x; open: straight sides from the axis on.
+
+    The printer's widening is for faces that stand upright on its bed: a flat floor that lies level keeps its height.
+    """
     import cadquery as cq
 
-    half, axis, (x0, x1) = channel.half_mm + clearance_mm, channel.axis_mm, channel.x_mm
+    half, axis, (x0, x1) = channel.half_mm + clearance_mm + widening_mm, channel.axis_mm, channel.x_mm
     beyond = 4.0 * channel.half_mm + OVERRUN_MM
     if channel.section == "square":
-        z = (axis - half - beyond * (channel.open == "down"), axis + half + beyond * (channel.open == "up"))
+        level = half if printed_along == "x" else half - widening_mm
+        z = (axis - level - beyond * (channel.open == "down"), axis + level + beyond * (channel.open == "up"))
         return box((x0, x1), (-half, half), z)
     if not channel.open:
         return cylinder((x0, 0.0, axis), (1, 0, 0), half, x1 - x0)
@@ -201,4 +206,4 @@ def clip_shape(clip: ClipPlan, offsets: Offsets = NOMINAL) -> Shape:
     )
     reach = (x[0] - OVERRUN_MM, x[1] + OVERRUN_MM)
     channel = BoomChannel(clip.section, clip.boom_half_mm, clip.boom_axis_mm, reach, "down")
-    return cut(blank, [slot, boom_channel(channel, clip.boom_clearance_mm + widening)])
+    return cut(blank, [slot, boom_channel(channel, clip.boom_clearance_mm, widening, "z")])
