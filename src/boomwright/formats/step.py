@@ -21,6 +21,9 @@ __all__ = ["STEP", "Step", "StepReading", "ReadBody", "MEASURES"]
 TIME_STAMP = "2000-01-01T00:00:00"
 """The same on every day: a file's bytes follow from its content alone."""
 
+MESH_SUFFIXES = (".stl", ".3mf")
+"""What every printed part is written as beside its STEP."""
+
 LOWEST_ALLOWED_MM = 1e-3
 """How far from the bed a part in print orientation may start."""
 
@@ -71,6 +74,8 @@ class Step(Format):
                 Expectation(path, "lowest point above the bed", 0.0, allowed, "mm", Probe("lowest_mm")),
                 Expectation(path, "overrun of the bed", 0.0, 1e-6, "mm", bed, "at_most"),
             ]
+            beside = [path.removesuffix(self.suffix) + suffix for suffix in MESH_SUFFIXES]
+            rules += [Expectation(mesh, "written beside its STEP", 1.0, 0.0, "", Probe("watertight")) for mesh in beside]
         return tuple(rules)
 
 
