@@ -6,7 +6,6 @@ Sheets are 400 units wide whatever they are shown at: at the width of a telephon
 from __future__ import annotations
 
 import re
-import unicodedata
 from collections.abc import Sequence
 from xml.sax.saxutils import escape, quoteattr
 
@@ -15,7 +14,8 @@ LEFT, RIGHT = 54.0, 388.0
 MARGIN = 12.0
 TOP = 56.0
 ROW = 17.0
-SUBTITLE_CELLS = 62
+SUBTITLE_CELLS = 50
+WIDE_FROM = "\u2e80"
 FORBIDDEN = re.compile("[^\t\n\r -\ud7ff\ue000-\ufffd\U00010000-\U0010ffff]")
 """What XML 1.0 cannot hold."""
 
@@ -111,10 +111,10 @@ def _clean(text: str) -> str:
 
 
 def _cut(text: str) -> str:
-    """As much of a text as fits the sheet; wide letters count twice."""
+    """As much of a text as fits the sheet; letters of the wide scripts count twice."""
     cells, kept = 0, ""
-    for letter in " ".join(text.split()):
-        cells += 2 if unicodedata.east_asian_width(letter) in "WF" else 1
+    for letter in " ".join(_clean(text).split()):
+        cells += 1 if letter < WIDE_FROM else 2
         if cells > SUBTITLE_CELLS:
             return f"{kept.rstrip()}…"
         kept += letter
