@@ -74,8 +74,9 @@ class Step(Format):
                 Expectation(path, "lowest point above the bed", 0.0, allowed, "mm", Probe("lowest_mm")),
                 Expectation(path, "overrun of the bed", 0.0, 1e-6, "mm", bed, "at_most"),
             ]
-            beside = [path.removesuffix(self.suffix) + suffix for suffix in MESH_SUFFIXES]
-            rules += [Expectation(mesh, "written beside its STEP", 1.0, 0.0, "", Probe("watertight")) for mesh in beside]
+            what, closed = "written beside its STEP", Probe("watertight")
+            meshes = [path.removesuffix(self.suffix) + suffix for suffix in MESH_SUFFIXES]
+            rules += [Expectation(mesh, what, 1.0, 0.0, "", closed) for mesh in meshes]
         return tuple(rules)
 
 
