@@ -61,12 +61,14 @@ class Csv(Format):
         return CsvReading(path, rows[0], tuple(rows[1:]))
 
     def measure(self, reading: Any, probe: Probe, also: Sequence[Any]) -> float:
-        """`row_count`, or `cell` {row (from 0), column (its name)} as a number."""
+        """`row_count`, `cell` {row (from 0), column (its name)}, or `column_sum` {column, where {column: text}}."""
         if probe.measure == "row_count":
             return float(len(reading.rows))
         if probe.measure == "cell":
             return _cell(reading, probe.arguments)
-        raise CatalogueError(f"unknown CSV measure {probe.measure!r} (known: row_count, cell)")
+        if probe.measure == "column_sum":
+            return _column_sum(reading, probe.arguments)
+        raise CatalogueError(f"unknown CSV measure {probe.measure!r} (known: row_count, cell, column_sum)")
 
     def expect(self, entry: FileEntry, shop: Shop) -> tuple[Expectation, ...]:
         """At least a heading: what else a table must show is its part's to say."""
@@ -81,6 +83,19 @@ def _cell(reading: CsvReading, arguments: Mapping[str, Any]) -> float:
     if not _is_number(text) or not math.isfinite(float(text)):
         raise MeasureError(f"{reading.path.name}: {text!r} in row {row} of column {column!r} is not a number")
     return float(text)
+
+
+def _column_sum(reading: CsvReading, arguments: Mapping[str, Any]) -> float:
+    """Sum of a column over the rows whose other columns hold these texts; MeasureError when there is no such row."""
+    where = {str(column): str(text) for column, text in arguments["where"].items()}
+    unknown = [column for column in where if column not in reading.columns]
+    if unknown:
+        raise MeasureError(f"{reading.path.name}: no column {unknown[0]!r}")
+    places = {reading.columns.index(column): text for column, text in where.items()}
+    chosen = [i for i, row in enumerate(reading.rows) if all(row[place] == text for place, text in places.items())]
+    if not chosen:
+        raise MeasureError(f"{reading.path.name}: no row where {where}")
+    return math.fsum(_cell(reading, {"row": index, "column": arguments["column"]}) for index in chosen)
 
 
 def _is_number(text: str) -> bool:
