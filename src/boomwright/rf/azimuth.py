@@ -12,7 +12,7 @@ import numpy as np
 
 from boomwright.rf.arrays import Complexes, Floats
 from boomwright.rf.coupling import MIRROR_SIGNS, hat_values, quadrature_points, sampling_places
-from boomwright.rf.kernels import spherical_wave
+from boomwright.rf.kernels import spherical_wave, wave_rest
 from boomwright.rf.mesh import Mesh, rings
 
 ONE, COS, SIN, COS_COS, SIN_COS = range(5)
@@ -164,7 +164,8 @@ def surface_coupling(
     """Matrix block (U1, U2) between two surfaces, the second one's mirror image in y = 0 included.
 
     half   True: all is symmetric about z = 0, and the first one's azimuths below 180 degrees stand for the rest
-    apart  (Q1, Q2) masks of the pairs of rings to count, direct and image; default all
+    apart  (Q1, Q2) masks of the pairs of rings that are apart, direct and image; default all. Of the others only the
+           smooth rest of the wave over its static part counts, which points take as well
 
     Returns the block without the common factor of `impedance`.
     """
@@ -173,9 +174,10 @@ def surface_coupling(
     tables = []
     for number, flip in enumerate((1.0, -1.0)):
         other = second.points() * np.array([1.0, flip, 1.0])
-        wave = _point_waves(own, other, wavenumber_rad_m)
+        wave = spherical_wave(_distances(own, other), wavenumber_rad_m)
         if apart is not None:
-            wave *= apart[number][:, None, :, None]
+            near = np.broadcast_to(~apart[number][:, None, :, None], wave.shape)
+            wave[near] = wave_rest(_distances(own, other)[near], wavenumber_rad_m)
         tables.append(wave)
     plus = _contracted(tables[0] + tables[1], weights)
     minus = _contracted(tables[0] - tables[1], weights)
@@ -186,15 +188,15 @@ def surface_coupling(
     return total
 
 
-def _point_waves(first: Floats, second: Floats, wavenumber_rad_m: float) -> Complexes:
-    """exp(-jkR)/R between points (Q1, A1, 3) and (Q2, A2, 3), as (Q1, A1, Q2, A2)."""
+def _distances(first: Floats, second: Floats) -> Floats:
+    """Distances between points (Q1, A1, 3) and (Q2, A2, 3), as (Q1, A1, Q2, A2); never 0."""
     squared = np.zeros((*first.shape[:2], *second.shape[:2]))
     for axis in range(3):
         across = first[:, :, None, None, axis] - second[None, None, :, :, axis]
         across *= across
         squared += across
     np.maximum(squared, 1e-24, out=squared)
-    return spherical_wave(np.sqrt(squared, out=squared), wavenumber_rad_m)
+    return np.sqrt(squared, out=squared)
 
 
 def _contracted(waves: Complexes, weights: tuple[Floats, Floats]) -> Complexes:

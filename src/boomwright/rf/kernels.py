@@ -65,12 +65,7 @@ def dynamic_ring_kernels(
     product = 2.0 * radius_m * source_radius_m
     for angle in psi:
         distance = np.sqrt(base + product * (1.0 - np.cos(angle)))
-        phase = wavenumber_rad_m * distance
-        inverse = 1.0 / np.maximum(distance, 1e-300)
-        # cos(x) - 1 = -2 sin(x/2)^2 keeps its digits at small x.
-        value = np.empty(shape, dtype=np.complex128)
-        value.real = -2.0 * np.sin(phase / 2.0) ** 2 * inverse
-        value.imag = -np.sin(phase) * inverse
+        value = wave_rest(np.broadcast_to(distance, shape), wavenumber_rad_m)
         for order in range(3):
             total[order] += value * (np.cos(order * angle) / azimuths)
     return total[0], total[1], total[2]
@@ -82,6 +77,17 @@ def spherical_wave(distance_m: Floats, wavenumber_rad_m: float) -> Complexes:
     value = np.empty(distance_m.shape, dtype=np.complex128)
     value.real = np.cos(phase) / distance_m
     value.imag = -np.sin(phase) / distance_m
+    return value
+
+
+def wave_rest(distance_m: Floats, wavenumber_rad_m: float) -> Complexes:
+    """(exp(-jkR) - 1) / R [1/m] for distances [m], 0 included, any shape."""
+    phase = wavenumber_rad_m * distance_m
+    inverse = 1.0 / np.maximum(distance_m, 1e-300)
+    value = np.empty(distance_m.shape, dtype=np.complex128)
+    # cos(x) - 1 = -2 sin(x/2)^2 keeps its digits at small x.
+    value.real = -2.0 * np.sin(phase / 2.0) ** 2 * inverse
+    value.imag = -np.sin(phase) * inverse
     return value
 
 

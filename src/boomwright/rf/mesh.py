@@ -18,9 +18,9 @@ from boomwright.rf.outline import outline
 
 GROWTH = 1.4
 TIP_ELEMENT_RADII = 0.005
-GAP_EDGE_SHARE = 0.5
+GAP_EDGE_SHARE = 0.1
 CAP_NODES = (1.0, 0.996, 0.985, 0.94, 0.8, 0.45, 0.0)
-ELEMENTS_PER_HALF_CIRCLE = 6.0
+ELEMENTS_PER_HALF_CIRCLE = 8.0
 
 
 @dataclass(frozen=True)

@@ -41,7 +41,9 @@ class RingAction:
 
     def block(self, wavenumber_rad_m: float) -> Complexes:
         """Matrix of the conductor in its basis, without the common factor of `impedance`; (U, U)."""
-        moments = self.chord.static.plus(self.chord.dynamic(wavenumber_rad_m))
+        moments = self.chord.static
+        if self.surface is None:
+            moments = moments.plus(self.chord.dynamic(wavenumber_rad_m))
         total = block(self.mesh, moments, wavenumber_rad_m, self.families)
         if self.surface is not None:
             total += surface_coupling(self.surface, self.surface, wavenumber_rad_m, self.families == 1, self.apart)
