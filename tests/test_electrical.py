@@ -126,7 +126,7 @@ def test_make_solves_judges_and_writes_the_read_back(tmp_path: Path) -> None:
     ("file", "old", "new"),
     [
         ("rf/sweep.csv", ",9.", ",8."),
-        ("rf/predicted.s1p", " -0.", " 0."),
+        ("rf/predicted.s1p", " 0.", " 0.1"),
         ("rf/gain.svg", 'data-axis="y"', 'data-axis="z"'),
     ],
 )

@@ -106,10 +106,10 @@ class Prediction:
 
     @property
     def _beam_line(self) -> str:
-        found, middle = self.sweep, self.middle
-        beams = (("E-plane", found.beamwidth_e_deg[middle]), ("H-plane", found.beamwidth_h_deg[middle]))
+        solution = self.sweep.solutions[self.middle]
+        beams = (("E-plane", solution.beamwidth_e_deg), ("H-plane", solution.beamwidth_h_deg))
         words = [f"{plane} {'none' if width is None else f'{width:.1f} deg'}" for plane, width in beams]
-        return f"half-power beamwidth at {self.frequency_mhz[middle]:g} MHz: {', '.join(words)}"
+        return f"half-power beamwidth at {self.frequency_mhz[self.middle]:g} MHz: {', '.join(words)}"
 
 
 def predict_file(design_path: Path, at_mhz: Sequence[float] = (), points: int | None = None) -> Prediction:

@@ -97,10 +97,11 @@ def test_what_a_chart_does_not_show_is_a_finding(case, tmp_path):
         (CHART[: len(CHART) * 2 // 3], "chart.svg: not a readable SVG"),
         (CHART.replace(">880<", ">much<"), "chart.svg: not a readable SVG"),
         (CHART.replace("50,20", "50"), "chart.svg: not a readable SVG"),
+        (CHART.replace('data-axis="x"', 'data-axis="z"'), "chart.svg: not a readable SVG"),
         ("<html/>", "chart.svg: not an SVG"),
         ("<!DOCTYPE svg [<!ENTITY a 'b'>]>" + CHART, "chart.svg: declares entities"),
     ],
-    ids=["empty", "cut short", "no number", "no point", "other root", "entities"],
+    ids=["empty", "cut short", "no number", "no point", "odd axis", "other root", "entities"],
 )
 def test_what_is_no_chart_is_a_finding(text, start, tmp_path):
     with pytest.raises(MeasureError) as caught:

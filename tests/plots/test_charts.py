@@ -189,7 +189,7 @@ def test_ticks_are_round_numbers_and_ends_lie_on_them(low, high):
     assert span.low <= low <= high <= span.high
     assert 3 <= len(span.ticks) <= 8
     for tick in span.ticks:
-        assert float(span.label(tick)) == pytest.approx(tick)
+        assert float(span.label(tick).replace("\u2212", "-")) == pytest.approx(tick)
         mantissa = span.step / 10.0 ** np.floor(np.log10(span.step) + 1e-9)
         assert mantissa == pytest.approx(round(mantissa))
 

@@ -79,7 +79,7 @@ class Svg(Format):
             reading = PictureReading(path)
             for element in root.iter():
                 _take(element, reading)
-        except (ElementTree.ParseError, ValueError, IndexError) as error:
+        except (ElementTree.ParseError, ValueError, LookupError) as error:
             raise MeasureError(f"{path.name}: not a readable SVG ({error})") from error
         if root.tag != f"{NAMESPACE}svg":
             raise MeasureError(f"{path.name}: not an SVG")

@@ -37,7 +37,7 @@ class Span:
     def label(self, value: float) -> str:
         """A tick's number, with as many decimals as the step has."""
         decimals = max(0, -math.floor(math.log10(self.step) + 1e-9))
-        return f"{value + 0.0:.{decimals}f}"
+        return f"{value + 0.0:.{decimals}f}".replace("-", "\u2212")
 
 
 def span_of(low: float, high: float, ticks: int = 5, whole: bool = True) -> Span:

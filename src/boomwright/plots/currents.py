@@ -10,7 +10,7 @@ from boomwright.plots.axes import BELOW, BOTTOM, Axes, span_of
 from boomwright.plots.sheet import MARGIN, Sheet
 
 COLUMNS = (0.0, 60.0, 150.0, 240.0)
-NAME_ROOM = 22.0
+NAME_ROOM = 30.0
 
 
 def draw_currents(title: str, currents: Sequence[tuple[str, float, complex]], subtitle: str) -> str:

@@ -11,7 +11,7 @@ from boomwright.plots.sheet import MARGIN, TOP, WIDTH, Sheet, number
 RADIUS = 142.0
 MIDDLE_X, MIDDLE_Y = WIDTH / 2.0, TOP + RADIUS + 34.0
 DEPTH_DB = 40.0
-RING_DB = 10.0
+RING_DB, TOP_STEP_DB = 10.0, 5.0
 SPOKE_DEG = 30
 NUMBERS_DEG = 105.0
 COLUMN = 150.0
@@ -38,7 +38,7 @@ class Cut:
 def draw_pattern(cut: Cut, subtitle: str) -> str:
     """A cut as SVG text, forward to the right; `subtitle` says whose pattern it is."""
     sheet = Sheet(cut.title, subtitle)
-    top_dbi = RING_DB * math.ceil(max(cut.gain_dbi) / RING_DB - 1e-6)
+    top_dbi = TOP_STEP_DB * math.ceil(max(cut.gain_dbi) / TOP_STEP_DB - 1e-6)
     _draw_rings(sheet, top_dbi)
     _draw_spokes(sheet, cut.side)
     _name_rings(sheet, top_dbi)
