@@ -169,6 +169,8 @@ def _fit(room: MouldRoom, neighbour: Neighbour | None, axis_mm: float, sign: flo
     least = [room.least_resin_mm, room.least_wall_mm, LEAST_CLEARANCE_MM if room.pull == "z" else TRAVEL_SPARE_MM]
     wished[0] = max(wished[0], least[0])
     sizes, why, fault = list(wished), ["resin and wall as wished"], None
+    if wished[0] > room.shop.mould.wall_mm:
+        why = [f"{wished[0]:.4g} of resin to cover the pocket in the boom; wall as wished"]
     if neighbour is not None:
         free = abs(neighbour.surface_mm - axis_mm)
         why = [f"{free:.4g} mm from the axis to {neighbour.tag}"]
