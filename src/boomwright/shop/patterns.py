@@ -17,8 +17,8 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-NODE_LIMIT = 5_000
-"""Most branches of an integer programme; a search cut short there is reported as not proven."""
+NODE_LIMIT, QUICK_NODES = 5_000, 3_000
+"""Most branches of an integer programme over all patterns (cut short there: not proven) and of the first attempt."""
 
 MOST_PATTERNS = 40_000
 """Most patterns handed to the last integer programme; beyond them the result is reported as not proven."""
@@ -169,20 +169,18 @@ class _Search:
         if short:
             return None, True
         most = len(chosen) if chosen is not None else sum(self.task.wanted)
-        targets = [target for target in self._targets(most) if target >= bound - EPSILON]
-        if chosen is None or _cost(self.task, chosen) > targets[0] + EPSILON:
-            fresh = self._choose(self.patterns)[0]
-            known = [choice for choice in (chosen, fresh) if choice is not None]
-            chosen = min(known, key=lambda choice: _cost(self.task, choice), default=None)
-        found = _cost(self.task, chosen) if chosen is not None else math.inf
-        for target in targets:
-            if target > found - EPSILON:
+        for target in self._targets(most):
+            if target < bound - EPSILON:
+                continue
+            if chosen is not None and target > _cost(self.task, chosen) - EPSILON:
                 return chosen, True
-            chances = self._chances(prices, rents, target - bound + EPSILON)
-            if chances is None:
-                return chosen, False
-            better, certain = self._choose(chances)
-            if better is not None and _cost(self.task, better) <= target + EPSILON:
+            better, certain = self._choose(self.patterns, target, QUICK_NODES)
+            if better is None:
+                chances = self._chances(prices, rents, target - bound + EPSILON)
+                if chances is None:
+                    return chosen, False
+                better, certain = self._choose(chances, target, NODE_LIMIT)
+            if better is not None:
                 return better, True
             if not certain:
                 return chosen, False
@@ -217,27 +215,29 @@ class _Search:
             if table.best > self.task.costs[kind] - rents[kind] + EPSILON:
                 yield _Pattern(kind, table.pattern())
 
-    def _choose(self, patterns: Sequence[_Pattern]) -> tuple[list[_Pattern] | None, bool]:
-        """The cheapest whole numbers of these patterns that give all pieces (None = none do); whether it is certain."""
+    def _choose(self, patterns: Sequence[_Pattern], target: float, nodes: int) -> tuple[list[_Pattern] | None, bool]:
+        """Whole numbers of these patterns that give all pieces within a cost; None = none do, when it is certain."""
         from scipy.optimize import LinearConstraint, milp
 
         task = self.task
+        costs = np.array([task.costs[p.kind] for p in patterns])
         cover = np.array([p.counts for p in patterns]).T
         of_kind = np.array([[p.kind == k for p in patterns] for k in range(len(task.rooms))]).astype(float)
+        # Any choice within the cost will do, so the programme has nothing else to minimise.
         result: Any = milp(
-            np.array([task.costs[p.kind] for p in patterns]),
+            np.zeros(len(patterns)),
             integrality=np.ones(len(patterns), dtype=np.int64),
             constraints=[
                 LinearConstraint(cover, np.array(task.wanted), np.inf),
                 LinearConstraint(of_kind, -np.inf, np.array(task.most)),
+                LinearConstraint(costs[None, :], -np.inf, target + EPSILON),
             ],
-            options={"node_limit": NODE_LIMIT, "mip_rel_gap": 0.0},
+            options={"node_limit": nodes},
         )
-        certain = result.status in (0, 2)
         if result.x is None:
-            return None, certain
+            return None, result.status == 2
         times = np.rint(result.x).astype(int)
-        return [p for p, n in zip(patterns, times, strict=True) for _ in range(n)], certain
+        return [p for p, n in zip(patterns, times, strict=True) for _ in range(n)], True
 
     def _targets(self, most: int) -> list[float]:
         """The costs that sets of up to so many bars can have, in order."""

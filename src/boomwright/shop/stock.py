@@ -10,8 +10,8 @@ from dataclasses import dataclass
 from boomwright.shop.patterns import pack
 from boomwright.shop.profile import Saw
 
-UNITS_PER_MM = 100
-"""Lengths are compared as whole hundredths, pieces rounded up, bars down: what fits in the plan fits on the bench."""
+UNITS_PER_MM = 10
+"""Lengths are compared as whole tenths, pieces rounded up, bars down: finer than any saw, and quick to search."""
 
 
 @dataclass(frozen=True)
