@@ -16,8 +16,8 @@ from boomwright.rf.coupling import Samples, sample
 from boomwright.rf.mesh import Mesh, build, plan_nodes
 from boomwright.rf.outline import facing_m, outline
 
-ELEMENTS_PER_HALF = 16.0
-ELEMENTS_PER_WAVELENGTH = 48.0
+ELEMENTS_PER_HALF = 20.0
+ELEMENTS_PER_WAVELENGTH = 60.0
 THICK_KA = 0.1
 CLOSE_RADII = 10.0
 FINEST_FACTOR = 3.0

@@ -12,7 +12,7 @@ from boomwright.rf.mesh import Mesh, rings
 from boomwright.rf.own import FAR_SIZES, OwnAction, block, element_gaps, nodal
 from boomwright.rf.quadrature import smooth_rule
 
-CHORD_RADII, COAXIAL_RADII = 4.0, 12.0
+CHORD_RADII, CHORD_RADII_SURFACE, COAXIAL_RADII = 4.0, 2.5, 12.0
 CLOSE_POINTS_MAX = 40
 
 Mask = np.ndarray[tuple[int, ...], np.dtype[np.bool_]]
@@ -23,7 +23,8 @@ class RingAction:
 
     def __init__(self, mesh: Mesh, samples: Samples | None, surface: Surface | None, families: int) -> None:
         self.mesh, self.samples, self.surface, self.families = mesh, samples, surface, families
-        near = np.array([_near(mesh, mirrored) for mirrored in (False, True)])
+        chord_radii = CHORD_RADII if surface is None else CHORD_RADII_SURFACE
+        near = np.array([_near(mesh, mirrored, chord_radii) for mirrored in (False, True)])
         self.chord = OwnAction(mesh, surface is not None, near)
         self.close: list[tuple[bool, Integers, Integers, Integers]] = []
         taken = near.copy()
@@ -88,7 +89,7 @@ class RingAction:
         charge[p, q] += (-1.0 if mirrored else 1.0) * (kernel @ weights[4])
 
 
-def _near(mesh: Mesh, mirrored: bool) -> Mask:
+def _near(mesh: Mesh, mirrored: bool, chord_radii: float) -> Mask:
     """Pairs of elements close to one another along the axis, across the mirror plane too; (E, E)."""
     travel = np.concatenate([[0.0], np.cumsum(mesh.travel_m)])
     start, end, total = travel[:-1], travel[1:], travel[-1]
@@ -104,7 +105,7 @@ def _near(mesh: Mesh, mirrored: bool) -> Mask:
     if mirrored:
         # Runs go straight on across the mirror plane at the feed and opposite it, nowhere else.
         same &= np.isin(run, (run[0], run[-1]))[None, :] & (mesh.bend_rad_m == 0.0)[None, :]
-    reach = np.where(same, COAXIAL_RADII, CHORD_RADII) * np.maximum(radius[:, None], radius[None, :])
+    reach = np.where(same, COAXIAL_RADII, chord_radii) * np.maximum(radius[:, None], radius[None, :])
     size = np.maximum(mesh.size_m[:, None], mesh.size_m[None, :])
     index = np.arange(mesh.elements)
     touching = np.abs(index[:, None] - index[None, :]) <= (-1 if mirrored else 1)
