@@ -26,6 +26,8 @@ __all__ = [
     "Matrix",
     "NetworkPiece",
     "Operation",
+    "Page",
+    "PagesPiece",
     "Part",
     "PicturePiece",
     "Piece",
@@ -145,7 +147,26 @@ class PicturePiece:
     svg: str
 
 
-Piece = SolidPiece | DrawingPiece | TablePiece | NetworkPiece | PicturePiece
+@dataclass(frozen=True)
+class Page:
+    """One page at true scale: straight lines and words [mm], from its lower left corner."""
+
+    marks: tuple[Mark, ...]
+    lettering: tuple[Lettering, ...] = ()
+
+
+@dataclass(frozen=True)
+class PagesPiece:
+    """Pages of one size (x, y) [mm] for one PDF file; layers are capitals and hyphens."""
+
+    stem: str
+    process: Process
+    title: str
+    size_mm: tuple[float, float]
+    pages: tuple[Page, ...]
+
+
+Piece = SolidPiece | DrawingPiece | TablePiece | NetworkPiece | PicturePiece | PagesPiece
 
 
 @dataclass(frozen=True)

@@ -105,5 +105,5 @@ def test_an_oversize_part_overruns_the_bed_either_way_round(tmp_path):
 
 
 def test_the_catalogue_lists_the_formats_without_reading_any_file():
-    assert FORMATS.names() == ("step", "stl", "3mf", "dxf", "csv", "touchstone", "svg")
-    assert [form.suffix for form in FORMATS] == [".step", ".stl", ".3mf", ".dxf", ".csv", ".s1p", ".svg"]
+    assert FORMATS.names() == ("step", "stl", "3mf", "dxf", "csv", "touchstone", "svg", "pdf")
+    assert [form.suffix for form in FORMATS] == [".step", ".stl", ".3mf", ".dxf", ".csv", ".s1p", ".svg", ".pdf"]

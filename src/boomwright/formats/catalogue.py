@@ -7,9 +7,9 @@ from boomwright.registry import Catalogue
 
 
 def _fill(catalogue: Catalogue[Format]) -> None:
-    from boomwright.formats import csvtable, dxf, step, stl, svg, threemf, touchstone
+    from boomwright.formats import csvtable, dxf, pdf, step, stl, svg, threemf, touchstone
 
-    for entry in (step.STEP, stl.STL, threemf.THREEMF, dxf.DXF, csvtable.CSV, touchstone.TOUCHSTONE, svg.SVG):
+    for entry in (step.STEP, stl.STL, threemf.THREEMF, dxf.DXF, csvtable.CSV, touchstone.TOUCHSTONE, svg.SVG, pdf.PDF):
         catalogue.enter(entry.name, entry)
 
 

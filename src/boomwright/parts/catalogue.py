@@ -17,6 +17,8 @@ _OWN = (
     "boomwright.parts.sleeve:SleevePart",
     "boomwright.parts.driven:DrivenPart",
     "boomwright.parts.cut_list:CutListPart",
+    "boomwright.parts.stock_plan:StockPlanPart",
+    "boomwright.parts.wrap:WrapTemplate",
     "boomwright.parts.cradle:CradlePart",
     "boomwright.parts.mould:Mould",
     "boomwright.parts.comb:SpacingComb",

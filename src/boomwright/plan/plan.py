@@ -12,6 +12,8 @@ from boomwright.plan.cradle import CradlePlan, cradle_left_out, plan_cradle
 from boomwright.plan.mould import MouldPlan, plan_mould
 from boomwright.plan.seat import SeatPlan, plan_seat
 from boomwright.plan.size import Size
+from boomwright.plan.stock import plan_stock
+from boomwright.plan.wrap import plan_wrap
 from boomwright.shop.profile import Shop
 
 
@@ -59,5 +61,7 @@ def make_plan(design: Design, shop: Shop) -> Plan:
         laid, cradle_sizes, cradle_faults = plan_cradle(design, boom, shop, seat)
         sizes = sizes + cradle_sizes
         by_part["cradle"] = tuple(cradle_faults)
-    sizes = [*sizes, *mould_sizes, *comb_sizes]
+    _, stock_sizes, by_part["stock-plan"] = plan_stock(design, shop)
+    _, wrap_sizes = plan_wrap(design, boom, wished)
+    sizes = [*sizes, *mould_sizes, *comb_sizes, *stock_sizes, *wrap_sizes]
     return Plan(design, shop, boom, wished, seat, comb, mould, tuple(sizes), laid, by_part)
