@@ -221,6 +221,24 @@ def test_conductors_that_touch_are_a_fault_of_the_design_s_key() -> None:
     assert fault.found.startswith("D1 and D2 touch: axes 2.000 mm apart")
 
 
+def test_what_radiates_nothing_is_a_fault() -> None:
+    tiny = replace(LOOP.driven, diameter_mm=0.2, gap_mm=0.4, perimeter_mm=5.0)
+    with pytest.raises(DesignFault) as caught:
+        predict(replace(LOOP, driven=tiny), (10.0,))
+    assert str(caught.value) == (
+        "driven: at 10 MHz less than 1e-08 of the power is radiated: this is no antenna\n"
+        "  fix: check that sizes are in mm and frequencies in MHz"
+    )
+
+
+@pytest.mark.parametrize("at_mhz", [10.0, 30.0, 1200.0])
+def test_far_from_resonance_every_figure_is_finite_or_null(at_mhz: float) -> None:
+    for design in (DIPOLE, LOOP, replace(LOOP, driven=replace(LOOP.driven, material="ideal"))):
+        found = document(design, (at_mhz,))
+        assert found["vswr"][0] >= 1.0
+        assert found["return_loss_db"][0] >= 0.0
+
+
 ARGUMENTS = {
     "not a number": (((math.nan,), None), "--at-mhz: nan is not a frequency in use\n  fix: give 10 to 20000 MHz"),
     "too low": (((9.9,), None), "--at-mhz: 9.9 is not a frequency in use\n  fix: give 10 to 20000 MHz"),

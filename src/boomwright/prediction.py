@@ -29,6 +29,7 @@ LOWEST_SHARE = 0.1
 """A sweep below a very wide band ends at this share of the band's lower edge."""
 HIGHEST_MULTIPLE = 4.0
 """Of the band's upper edge: beyond it rods are many wavelengths long and the equations large."""
+LEAST_EFFICIENCY = 1e-8
 DIGITS = 9
 """Significant digits of a figure in the document: more than the equations hold, fewer than differ by the machine."""
 
@@ -147,6 +148,7 @@ def predict(design: Design, at_mhz: tuple[float, ...] = (), points: int = POINTS
         found_sweep = sweep(wires_of(design), frequencies_hz, design.feed.system_ohm, centre_hz)
     except DesignFault as fault:
         raise DesignFault(_by_key(each, design) for each in fault.faults) from None
+    _refuse_no_antenna(chosen, found_sweep)
     return Prediction(design, chosen, found_sweep)
 
 
@@ -205,6 +207,14 @@ def _refuse_arguments(at_mhz: Sequence[float], points: int | None) -> None:
         faults.append(Fault("--at-mhz", f"{len(at_mhz)} frequencies", f"give at most {MOST_POINTS}"))
     if faults:
         raise InputFault(faults)
+
+
+def _refuse_no_antenna(frequency_mhz: Sequence[float], found: Sweep) -> None:
+    """Refuse what loses all its power: there rounding is all that is left of the radiated part."""
+    for at_mhz, efficiency in zip(frequency_mhz, found.efficiency, strict=True):
+        if not efficiency > LEAST_EFFICIENCY:
+            what = f"at {at_mhz:g} MHz less than {LEAST_EFFICIENCY:g} of the power is radiated: this is no antenna"
+            raise DesignFault([Fault("driven", what, "check that sizes are in mm and frequencies in MHz")])
 
 
 def _by_key(fault: Fault, design: Design) -> Fault:
