@@ -77,6 +77,12 @@ def test_exactly_one_conductor_is_fed():
 
 def test_warnings_name_what_is_near_its_limit():
     assert geometry_warnings(gauge_868(), 866.5e6) == ()
+    assert solve_at(gauge_868(), 866.5e6).warnings == ()
+    thin = Wires((replace(DIPOLE, radius_m=1e-4), Rod("D1", 6e-4, 0.45, 1e-4)))
+    assert solve_at(thin, 3e8).warnings == (
+        "DE and D1: axes 0.60 mm apart, nearer than 10 radii and far thinner than an element; "
+        "crowding of their currents is left out",
+    )
     found = geometry_warnings(Wires((Rod("DE", 0.0, 0.02, 5e-3, gap_m=2e-3), Rod("D1", 0.014, 0.02, 5e-3))), 6e9)
     assert [warning.split(":")[0] for warning in found] == ["DE", "DE", "D1", "D1", "DE and D1"]
     assert "k a > 0.3" in found[0]

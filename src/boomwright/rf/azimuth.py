@@ -7,6 +7,7 @@ that occur, then with the basis functions along the conductor [Mautz1969]. Azimu
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TypeAlias
 
 import numpy as np
 
@@ -17,6 +18,10 @@ from boomwright.rf.mesh import Mesh, rings
 
 ONE, COS, SIN, COS_COS, SIN_COS = range(5)
 """The azimuth functions that occur: 1, cos, sin, cos squared, sin cos."""
+
+
+Parts: TypeAlias = tuple[dict[int, Floats], ...]
+"""Moments along a ring's tangent, normal and aside, each by azimuth function, (rows, Q)."""
 
 
 @dataclass(frozen=True)
@@ -95,38 +100,41 @@ def surface(mesh: Mesh, azimuths: int, families: int, nearest_m: float = 0.0) ->
     inside = inside @ chosen.shares
     hats, slopes = (value * span) @ chosen.shares, (slope * weight) @ chosen.shares
     charge = [(0, {ONE: slopes})]
-    around = inside * at.radius_m
     unknowns = keep + families * (keep + mesh.elements)
-    # (row, moments along tangent, normal, aside): {azimuth function: values}
-    local: list[tuple[int, tuple[dict[int, Floats], ...]]] = [
+    local: list[tuple[int, Parts]] = [
         (0, ({ONE: hats * along, COS: -hats * along * crowd}, {COS: hats * outward}, {SIN: hats * outward}))
     ]
     value, slope = hat_values(mesh, element, place, plain=False)
     hats, slopes = (value * span) @ chosen.shares, (slope * weight) @ chosen.shares
     for family in range(families):
         row = keep + family * (keep + mesh.elements)
-        pair = (COS, COS_COS) if family == 0 else (SIN, SIN_COS)
-        radial = (
-            ({COS_COS: hats * outward}, {SIN_COS: hats * outward})
-            if family == 0
-            else ({SIN_COS: hats * outward}, {ONE: hats * outward, COS_COS: -hats * outward})
-        )
-        local.append((row, ({pair[0]: hats * along, pair[1]: -hats * along * crowd}, *radial)))
-        turning = (
-            ({COS_COS: around, ONE: -around}, {SIN_COS: around})
-            if family == 0
-            else ({SIN_COS: around}, {COS_COS: -around})
-        )
-        local.append((row + keep, ({}, *turning)))
-        charge += [(row, {pair[0]: slopes}), (row + keep, {pair[0]: inside})]
+        lengthwise, around = _varying(hats * along, hats * outward, inside * at.radius_m, family)
+        lengthwise[0][COS_COS if family == 0 else SIN_COS] = -hats * along * crowd
+        local += [(row, lengthwise), (row + keep, around)]
+        function = COS if family == 0 else SIN
+        charge += [(row, {function: slopes}), (row + keep, {function: inside})]
     frame = (at.tangent, at.normal, aside)
     current = tuple(_moment(_along(local, frame, axis), unknowns) for axis in range(3))
     return Surface(at.centre, at.normal, aside, at.radius_m, azimuths, current, _moment(charge, unknowns), unknowns)
 
 
-def _along(
-    local: list[tuple[int, tuple[dict[int, Floats], ...]]], frame: tuple[Floats, ...], axis: int
-) -> list[tuple[int, dict[int, Floats]]]:
+def _varying(along: Floats, outward: Floats, around: Floats, family: int) -> tuple[Parts, Parts]:
+    """Moments of m = 1: of the current along the generating curve, and of that round the ring.
+
+    family  0: T cos(phi) with P sin(phi), 1: T sin(phi) with -P cos(phi)
+    """
+    if family == 0:
+        return (
+            ({COS: along}, {COS_COS: outward}, {SIN_COS: outward}),
+            ({}, {COS_COS: around, ONE: -around}, {SIN_COS: around}),
+        )
+    return (
+        ({SIN: along}, {SIN_COS: outward}, {ONE: outward, COS_COS: -outward}),
+        ({}, {SIN_COS: around}, {COS_COS: -around}),
+    )
+
+
+def _along(local: list[tuple[int, Parts]], frame: tuple[Floats, ...], axis: int) -> list[tuple[int, dict[int, Floats]]]:
     """Moments in the rings' own frames turned into one component, by first row and azimuth function."""
     turned = []
     for row, moments in local:

@@ -15,11 +15,11 @@ from boomwright.rf.conductors import Conductor, Folded, Loop, Rod, Wires
 from boomwright.rf.coupling import Samples, sample
 from boomwright.rf.mesh import Mesh, build, plan_nodes
 from boomwright.rf.outline import facing_m, outline
+from boomwright.rf.validity import CLOSE_RADII
 
 ELEMENTS_PER_HALF = 20.0
 ELEMENTS_PER_WAVELENGTH = 60.0
 THICK_KA = 0.1
-CLOSE_RADII = 10.0
 FINEST_FACTOR = 3.0
 GAP_SHARE = 0.75
 FACING_SPACINGS = 14.0

@@ -2,7 +2,13 @@
 
 Every pair of elements is integrated with a rule made for it; the static part depends on the shape alone and is kept,
 the dynamic rest is smooth. Along a bend, rings close to one another act as if their axis ran along the chord.
-Harmonic m = 0 always, m = 1 on request; their integrals are derived in DEVELOPERS.md [Harrington1968], [Mautz1969].
+Harmonic m = 0 always; m = 1 on request [Mautz1969]: with t along the generating curve and rho the ring's radius,
+
+    J_t = T(t) cos(phi) / (2 pi rho),  J_phi = P(t) sin(phi) / (2 pi),  charge ~ (T' + P) cos(phi) / (2 pi rho),
+
+T linear and P constant on an element, so that the charge is constant too. Means over both azimuths leave the ring
+harmonics g0, g1, g2 of the kernel: T with T along the axis and charge with charge g1 / 2, P with P and radial T with
+radial T (g0 + g2) / 4, radial T with P (g2 - g0) / 4; for m = 0 along the axis and charge g0, radial g1 [Harrington1968].
 """
 
 from __future__ import annotations
@@ -11,12 +17,12 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from boomwright.rf.arrays import Complexes, Floats, Integers, Numbers
+from boomwright.rf.arrays import Complexes, Floats, Numbers
 from boomwright.rf.kernels import dynamic_ring_kernels, static_ring_kernels
 from boomwright.rf.mesh import Mesh, Rings, plain_shapes, radius_at, rings
-from boomwright.rf.quadrature import PairRule, corner_rule, from_start, self_rule, smooth_rule
+from boomwright.rf.pairs import PairSet, pair_sets
+from boomwright.rf.quadrature import smooth_rule
 
-FAR_SIZES = 1.5
 AZIMUTHS_PLAIN = 2
 AZIMUTHS_FULL = 5
 
@@ -24,16 +30,6 @@ EXCHANGED = [0, 2, 1, 3, 4, 5, 7, 6, 8, 9, 10, 13, 14, 11, 12]
 """Rows of `PairGeometry.plain` and `.varying` when the elements of a pair change places."""
 
 Harmonics = tuple[Numbers, Numbers, Numbers]
-
-
-@dataclass(frozen=True)
-class PairSet:
-    """Pairs of elements that share a rule: observed element, source element, whether the source is mirrored."""
-
-    first: Integers
-    second: Integers
-    mirrored: bool
-    rule: PairRule
 
 
 @dataclass(frozen=True)
@@ -66,65 +62,6 @@ class Moments:
             both(self.around1, other.around1),
             both(self.mixed1, other.mixed1),
         )
-
-
-def pair_sets(mesh: Mesh, wanted: np.ndarray[tuple[int, ...], np.dtype[np.bool_]]) -> list[PairSet]:
-    """Pairs of elements with the rule each needs.
-
-    wanted  (2, E, E): which pairs to take, direct and mirrored; symmetric
-
-    Returns sets that together hold every wanted pair once, the first element never behind the second.
-    """
-    count = mesh.elements
-    index = np.arange(count)
-    offset = index[None, :] - index[:, None]
-    sets = []
-    for mirrored in (False, True):
-        take = wanted[int(mirrored)]
-        gap, size = element_gaps(mesh, mirrored)
-        touching = np.abs(offset) <= 1
-        if mirrored:
-            touching = np.zeros((count, count), dtype=bool)
-            touching[0, 0] = True
-            if mesh.closed:
-                touching[-1, -1] = True
-            sets += [
-                PairSet(np.array([0]), np.array([0]), True, from_start(corner_rule())),
-                *([PairSet(np.array([count - 1]), np.array([count - 1]), True, _from_end())] if mesh.closed else []),
-            ]
-        else:
-            sets += [
-                PairSet(index, index, False, self_rule()),
-                PairSet(index[:-1], index[1:], False, corner_rule()),
-            ]
-        rest = np.triu(take & ~touching)
-        far = gap > FAR_SIZES * size
-        for mask, rule in ((rest & far, smooth_rule(2)), (rest & ~far, smooth_rule(5))):
-            first, second = np.nonzero(mask)
-            sets.append(PairSet(first, second, mirrored, rule))
-    return [s for s in sets if len(s.first)]
-
-
-def _from_end() -> PairRule:
-    rule = corner_rule()
-    return PairRule(rule.first, 1.0 - rule.second, rule.weight)
-
-
-def element_gaps(mesh: Mesh, mirrored: bool) -> tuple[Floats, Floats]:
-    """Least distance between the ends of two elements' generating lines [m], and the larger one's size [m]; (E, E)."""
-    places = np.arange(mesh.elements)[:, None], np.array([0.0, 1.0])
-    radius = radius_at(mesh, *places)
-    if mesh.closed:
-        centre = rings(mesh, *places).centre
-        flip = np.array([1.0, -1.0 if mirrored else 1.0, 1.0])
-        across = ((centre[:, None, :, None, :] - (centre * flip)[None, :, None, :, :]) ** 2).sum(axis=-1)
-    else:
-        y = mesh.start[:, 1:2] + mesh.travel_m[:, None] * places[1]
-        across = (y[:, None, :, None] - (-y if mirrored else y)[None, :, None, :]) ** 2
-    radial = radius[:, None, :, None] - radius[None, :, None, :]
-    distance = np.sqrt(across + radial**2)
-    size = mesh.size_m
-    return distance.min(axis=(2, 3)), np.maximum(size[:, None], size[None, :])
 
 
 class PairGeometry:

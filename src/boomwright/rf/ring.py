@@ -9,7 +9,8 @@ from boomwright.rf.azimuth import Surface, surface_coupling
 from boomwright.rf.coupling import MIRROR_SIGNS, Samples, contracted, quadrature_points, ring_kernels, straight_runs
 from boomwright.rf.kernels import averaged_kernel
 from boomwright.rf.mesh import Mesh, rings
-from boomwright.rf.own import FAR_SIZES, OwnAction, block, element_gaps, nodal
+from boomwright.rf.own import OwnAction, block, nodal
+from boomwright.rf.pairs import FAR_SIZES, element_gaps
 from boomwright.rf.quadrature import smooth_rule
 
 CHORD_RADII, CHORD_RADII_SURFACE, COAXIAL_RADII = 4.0, 2.5, 12.0

@@ -27,7 +27,7 @@ from boomwright.rf.pattern import (
     sources_of,
     sphere,
 )
-from boomwright.rf.validity import balance_warning, geometry_warnings
+from boomwright.rf.validity import balance_warning, crowding_warnings, geometry_warnings
 
 FORWARD = np.array([[1.0, 0.0, 0.0]])
 LEAST_FREQUENCY_HZ = 1e5
@@ -168,7 +168,9 @@ class Solution:
     @property
     def warnings(self) -> tuple[str, ...]:
         """What to doubt: geometry near the equations' limits, power balance off."""
-        return geometry_warnings(self.wires, self.frequency_hz) + balance_warning(self.frequency_hz, self.imbalance)
+        crowding = () if self.mode.families else crowding_warnings(self.wires)
+        found = geometry_warnings(self.wires, self.frequency_hz) + crowding
+        return found + balance_warning(self.frequency_hz, self.imbalance)
 
 
 class Model:

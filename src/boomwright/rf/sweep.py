@@ -17,7 +17,7 @@ from boomwright.rf.conductors import Wires
 from boomwright.rf.feed import return_loss_db, vswr
 from boomwright.rf.quadrature import interpolation
 from boomwright.rf.solve import Model, Solution, factored, refuse_frequencies
-from boomwright.rf.validity import balance_warning, geometry_warnings, span_warnings
+from boomwright.rf.validity import balance_warning, crowding_warnings, geometry_warnings, span_warnings
 
 INTERPOLATION_ERROR = 1e-8
 STORED_NUMBERS_MOST = 20_000_000
@@ -118,6 +118,7 @@ def sweep(
     worst = max(solutions, key=lambda solution: abs(solution.imbalance))
     warnings = (
         *geometry_warnings(wires, ascending[-1]),
+        *(() if model.mode.families else crowding_warnings(wires)),
         *span_warnings(ascending, design_frequency_hz),
         *balance_warning(worst.frequency_hz, worst.imbalance),
     )

@@ -8,6 +8,7 @@ from boomwright.rf.conductors import Rod, Wires
 
 THICKEST_KA = 0.3
 NEAREST_RADII = 3.0
+CLOSE_RADII = 10.0
 SHORTEST_DIAMETERS = 3.0
 SWEEP_SPAN = (0.5, 1.5)
 BALANCE_ALLOWED = 0.01
@@ -36,6 +37,16 @@ def geometry_warnings(wires: Wires, frequency_hz: float) -> tuple[str, ...]:
                 "current crowds more than the equations carry"
             )
     return tuple(found)
+
+
+def crowding_warnings(wires: Wires) -> tuple[str, ...]:
+    """Warnings for conductors near one another, where current is not let vary round them."""
+    return tuple(
+        f"{first} and {second}: axes {distance_m * 1e3:.2f} mm apart, nearer than {CLOSE_RADII:.0f} radii and far "
+        "thinner than an element; crowding of their currents is left out"
+        for first, second, distance_m, a, b in spacings(wires)
+        if first != second and NEAREST_RADII * max(a, b) <= distance_m < CLOSE_RADII * max(a, b)
+    )
 
 
 def span_warnings(frequencies_hz: tuple[float, ...], design_frequency_hz: float | None) -> tuple[str, ...]:
