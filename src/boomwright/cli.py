@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import signal
 import sys
 from collections.abc import Sequence
 from enum import StrEnum
@@ -154,16 +155,34 @@ def _progress(step: str) -> None:
 
 def main() -> None:
     """Run the command line; every error raised on purpose becomes a message and an exit status."""
+    interrupts: list[int] = []
+
+    def interrupt(number: int, frame: object) -> NoReturn:
+        interrupts.append(number)
+        raise KeyboardInterrupt
+
+    signal.signal(signal.SIGINT, interrupt)
     try:
         app()
-    except InputFault as fault:
-        typer.echo(str(fault), err=True)
-        sys.exit(FAULT)
-    except AccessError as error:
-        typer.echo(f"boomwright: {error.strerror or error}", err=True)
-        sys.exit(NO_ACCESS)
-    except BoomwrightError as error:
-        typer.echo(f"boomwright: {error}", err=True)
-        sys.exit(NO_ACCESS)
     except KeyboardInterrupt:
         sys.exit(INTERRUPTED)
+    except Exception as error:
+        # An interrupt inside a compiled module's loading comes out as an ImportError: the signal tells the truth.
+        sys.exit(INTERRUPTED if interrupts else _status(error))
+
+
+def _status(error: Exception) -> int:
+    """Say what went wrong and give its exit status; what nobody raised on purpose is raised again."""
+    if isinstance(error, InputFault):
+        typer.echo(str(error), err=True)
+        return FAULT
+    if isinstance(error, AccessError):
+        typer.echo(f"boomwright: {error.strerror or error}", err=True)
+        return NO_ACCESS
+    if isinstance(error, OSError):
+        typer.echo(f"boomwright: {error.filename or 'cannot read or write'}: {error.strerror or error}", err=True)
+        return NO_ACCESS
+    if isinstance(error, BoomwrightError):
+        typer.echo(f"boomwright: {error}", err=True)
+        return NO_ACCESS
+    raise error

@@ -25,7 +25,7 @@ import cadquery as cq
 from OCP.BRepAlgoAPI import BRepAlgoAPI_Common
 from OCP.BRepMesh import BRepMesh_IncrementalMesh
 from boomwright.design.tomlfile import load_design
-from boomwright.formats.meshes import CHORD_MM
+from boomwright.formats.meshing import CHORD_MM
 from boomwright.parts.catalogue import PARTS
 from boomwright.parts.solids import place
 from boomwright.pieces import SolidPiece
