@@ -87,15 +87,25 @@ def test_a_half_channel_lets_a_rod_go_and_a_full_bore_does_not() -> None:
     whole = box((-4, -5, -4), (4, 5, 4)).cut(bore)
     assert measure("sweep_overlap_mm3", reading(half), legs=[[0, 0, 20]], solids=[rod]) == 0.0
     assert measure("sweep_overlap_mm3", reading(whole), legs=[[0, 0, 20]], solids=[rod]) > 1.0
-    assert measure("solids_overlap_mm3", reading(whole), solids=[rod]) == 0.0
+    assert measure("interference_mm3", reading(whole), solids=[rod]) == 0.0
+
+
+@pytest.mark.parametrize("gap_mm", [0.2, 0.03, 0.001, 0.0, -0.001, -0.03])
+def test_a_rod_in_a_bore_is_decided_to_the_micron(gap_mm: float) -> None:
+    """Meshes are off by more than these gaps; the answer is not."""
+    rod = reading(cq.Solid.makeCylinder(2.0, 20, cq.Vector(0, 0, -10), cq.Vector(0, 0, 1)))
+    bore = cq.Solid.makeCylinder(2.0 + gap_mm, 20, cq.Vector(0, 0, -10), cq.Vector(0, 0, 1))
+    found = measure("interference_mm3", reading(box((-4, -4, 0), (4, 4, 4)).cut(bore)), rod)
+    ring = math.pi * 4.0 * (2.0**2 - (2.0 + gap_mm) ** 2)
+    assert found == pytest.approx(max(0.0, ring), abs=1e-5)
 
 
 def test_common_volume_with_a_solid_of_no_file() -> None:
     rod = {"kind": "cylinder", "start": [0, 0, -9], "end": [0, 0, 9], "radius_mm": 1.0}
-    found = measure("solids_overlap_mm3", reading(box((-4, -4, 0), (4, 4, 4))), solids=[rod])
+    found = measure("interference_mm3", reading(box((-4, -4, 0), (4, 4, 4))), solids=[rod])
     assert found == pytest.approx(4.0 * math.pi, rel=1e-6)
     with pytest.raises(MeasureError, match="no such solid: 'torus'"):
-        measure("solids_overlap_mm3", reading(box((-4, -4, 0), (4, 4, 4))), solids=[{"kind": "torus"}])
+        measure("interference_mm3", reading(box((-4, -4, 0), (4, 4, 4))), solids=[{"kind": "torus"}])
 
 
 def test_room_is_the_box_less_everything_in_it() -> None:

@@ -23,6 +23,8 @@ Shape = Any
 """A bare shape of the kernel."""
 
 CHORD_MM, ANGLE_RAD = 0.02, 0.4
+APART_MM = 2.5 * CHORD_MM
+"""Meshes that are farther apart than this belong to solids that do not meet: each is off its solid by a chord."""
 
 
 def obstacles_of(arguments: Arguments, also: Sequence[Any]) -> list[Shape]:
@@ -87,15 +89,20 @@ def shifted(shape: Shape, by: Vector) -> Shape:
 
 
 def common_mm3(body: Shape, others: Sequence[Shape]) -> float:
-    """Volume of a body in any of the others [mm³], one boolean each: they may touch one another."""
+    """Volume of a body in each of the others [mm³], added up: exact booleans where boxes and meshes are not apart."""
     from OCP.BRepAlgoAPI import BRepAlgoAPI_Common
 
     total = 0.0
     for other in others:
-        if boxes_meet(box_of(body), box_of(other)):
+        if boxes_meet(box_of(body), box_of(other)) and not apart(manifold_of(body), manifold_of(other)):
             common = volume_mm3(boolean(BRepAlgoAPI_Common, [body], [other]))
             total += common if common > TOUCH_MM3 else 0.0
     return total
+
+
+def apart(one: Any, other: Any) -> bool:
+    """Whether two meshes are so far apart that the solids they were made from cannot meet."""
+    return bool(one.min_gap(other, APART_MM) >= APART_MM)
 
 
 @lru_cache(maxsize=256)

@@ -12,11 +12,11 @@ from typing import Any
 import numpy as np
 
 from boomwright.errors import MeasureError
-from boomwright.formats.bodies import TOUCH_MM3
 from boomwright.formats.brep import FaceView, StepReading, Vector
 from boomwright.formats.placed import (
     Arguments,
     Shape,
+    apart,
     box_of,
     boxes_meet,
     common_mm3,
@@ -26,7 +26,6 @@ from boomwright.formats.placed import (
     obstacles_of,
     plugs_of,
     shifted,
-    solid_of,
     solids_of,
 )
 from boomwright.formats.surfaces import samples
@@ -86,7 +85,7 @@ def measure_sweep(reading: StepReading, arguments: Arguments, also: Sequence[Any
     legs    moves one after the other, each [x, y, z] in the design's frame
 
     What a body passes through is the body and the prisms of those of its faces that look along the move. Meshes rule
-    out what they keep clear of by more than their chord; about the rest the kernel decides, at the places where the
+    out what these keep clear of by more than their chords; about the rest the kernel decides, at the places where the
     prisms meet the obstacle. Returns the largest overlap at any of these.
     """
     obstacles = obstacles_of(arguments, also)
@@ -126,7 +125,7 @@ def _meetings(corners: Vector, leg: Vector, obstacle: Shape) -> Vector:
     if not hulls:
         return np.zeros(0)
     solid = manifold_of(obstacle)
-    if (solid ^ manifold3d.Manifold.batch_boolean(hulls, manifold3d.OpType.Add)).volume() <= TOUCH_MM3:
+    if apart(solid, manifold3d.Manifold.batch_boolean(hulls, manifold3d.OpType.Add)):
         return np.zeros(0)
     common = [solid ^ hull for hull in hulls]
     deepest = np.argsort([-one.volume() for one in common])[:POINTED]
@@ -138,9 +137,12 @@ def _meetings(corners: Vector, leg: Vector, obstacle: Shape) -> Vector:
     return np.asarray(np.clip(shares, 0.0, 1.0), dtype=np.float64)
 
 
-def measure_solids_overlap(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
-    """Volume that the file's bodies have in common with `solids` [mm³]."""
-    others = [solid_of(one) for one in arguments["solids"]]
+def measure_interference(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """Volume that the file's bodies have in common with those of the further files and with `solids` [mm³].
+
+    Exact: only what boxes and meshes show to be apart is not asked of the kernel.
+    """
+    others = obstacles_of(arguments, also)
     return sum(common_mm3(body, others) for body in solids_of(reading, arguments.get("frame")))
 
 
@@ -224,7 +226,7 @@ def _on_axis(faces: Sequence[tuple[FaceView, Any]], point: Vector, direction: Ve
 MEASURES: dict[str, Callable[[Any, Arguments, Sequence[Any]], float]] = {
     "draft_deg": measure_draft,
     "sweep_overlap_mm3": measure_sweep,
-    "solids_overlap_mm3": measure_solids_overlap,
+    "interference_mm3": measure_interference,
     "cavity_volume_mm3": measure_cavity_volume,
     "cavity_connected": measure_connected,
     "pin_play_mm": measure_pin_play,

@@ -76,10 +76,11 @@ def _expect_half(plan: Plan, half: Half) -> list[Expectation]:
     sweep = {"frame": frame, "legs": mould.legs[half], "solids": _coax(mould)}
     what = f"{words} meets antenna or coax on its way off"
     found.append(_nothing(file, what, Probe("sweep_overlap_mm3", sweep, (ANTENNA,))))
-    frames = {"frame": frame, "also_frames": [None]}
-    found.append(_nothing(file, f"{words} overlap with the antenna", Probe("overlap_mm3", frames, (ANTENNA,))))
+    found.append(
+        _nothing(file, f"{words} overlap with the antenna", Probe("interference_mm3", {"frame": frame}, (ANTENNA,)))
+    )
     if mould.coax is not None:
-        probe = Probe("solids_overlap_mm3", {"frame": frame, "solids": _coax(mould)})
+        probe = Probe("interference_mm3", {"frame": frame, "solids": _coax(mould)})
         found.append(_nothing(file, f"{words} overlap with the coax", probe))
     found += _expect_neighbours(plan, half)
     return found
@@ -142,7 +143,7 @@ def _expect_clip(plan: Plan) -> list[Expectation]:
     also = (ANTENNA, _file("upper"), _file("lower"))
     off = ((0.0, 0.0, mould.clip.top_mm - mould.clip.foot_mm),)
     return [
-        _nothing(CLIP_FILE, "mould-clip overlap with antenna and mould", Probe("overlap_mm3", frames, also)),
+        _nothing(CLIP_FILE, "mould-clip overlap with antenna and mould", Probe("interference_mm3", frames, also)),
         _nothing(
             CLIP_FILE,
             "mould-clip meets the antenna on its way off",

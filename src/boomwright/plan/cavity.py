@@ -7,7 +7,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import pairwise
 from typing import Literal
 
@@ -166,6 +166,41 @@ def places_along(run: Run, shares: Array) -> Array:
     second = np.cross(normal / np.linalg.norm(normal), first)
     angles = shares[:, None] * run.angle_rad
     return np.asarray(centre + np.cos(angles) * first + np.sin(angles) * second)
+
+
+def within(runs: Sequence[Run], box_mm: tuple[Span, Span, Span], margin_mm: float) -> tuple[tuple[Run, ...], ...]:
+    """The parts of a conductor's centreline inside a box and a margin round it: for each visit the runs in order."""
+    low, high = (np.array([span[end] for span in box_mm]) for end in (0, 1))
+    shares = np.linspace(0.0, 1.0, STEPS_PER_RUN // 4)
+    visits: list[list[Run]] = []
+    for run in runs:
+        points = places_along(run, shares)
+        inside = np.all((points > low - margin_mm) & (points < high + margin_mm), axis=1)
+        turns = np.flatnonzero(np.diff(np.concatenate([[0], inside.astype(int), [0]])))
+        for first, last in zip(turns[::2], turns[1::2] - 1, strict=True):
+            if last > first:
+                part = _part(run, float(shares[first]), float(shares[last]))
+                if visits and math.dist(visits[-1][-1].end, part.start) < 1e-6:
+                    visits[-1].append(part)
+                else:
+                    visits.append([part])
+    return tuple(map(tuple, visits))
+
+
+def _part(run: Run, first: float, last: float) -> Run:
+    """A run between two shares of its length."""
+    if first == 0.0 and last == 1.0:
+        return run
+    start, middle, end = (
+        tuple(map(float, p)) for p in places_along(run, np.array([first, (first + last) / 2.0, last]))
+    )
+    return replace(
+        run,
+        start=start,
+        end=end,
+        middle=None if run.middle is None else middle,
+        angle_rad=run.angle_rad * (last - first),
+    )
 
 
 def _centre(run: Run) -> Array:

@@ -24,6 +24,7 @@ from boomwright.plan.cavity import (
     places_along,
     straight,
     wire_mm3,
+    within,
 )
 from boomwright.plan.mould_plan import BoomChannel, Half, MouldPlan, Opening, Wire
 from boomwright.plan.mould_room import (
@@ -54,6 +55,9 @@ MOUTH_SLOPE = math.tan(math.radians(40.0))
 VENT_MM = 0.75
 MOUTH_WALL_MM = 1.2
 TIP_PLAY_MM = 0.5
+CHANNEL_MARGIN_MM = 5.0
+"""How far conductor channels are drawn past the mould."""
+
 TIP_RESIN_MM = 1.0
 
 
@@ -188,16 +192,17 @@ def lay_out_mould(ground: Ground, cavity: Cavity, ends: Ends) -> MouldPlan:
     funnel, vent = _openings(ground, cavity, ends, z)
     boom = BoomBar(ground.boom.section, seat.half_width_mm, seat.axis_mm, (seat.start_mm, seat.end_mm), seat.grooves)
     opened: Literal["", "up", "down"] = "" if pull == "z" else "up" if is_loop else "down"
+    block = (ends.block_mm, (-face.outer_mm, face.outer_mm), z)
     return MouldPlan(
         pull=pull,
         at_mm=ground.driven.at_mm,
-        block=(ends.block_mm, (-face.outer_mm, face.outer_mm), z),
+        block=block,
         parting_mm=(seat.axis_mm, 0.0) if pull == "z" else (ground.driven.at_mm, ground.driven.at_mm),
         cavity=cavity,
         ends=ends,
         clearance_mm=clearance,
         boom=BoomChannel(boom.section, boom.half_mm, boom.axis_mm, _boom_reach(ground, ends), opened),
-        conductors=wires,
+        conductors=tuple(part for wire in wires for part in within(wire, block, CHANNEL_MARGIN_MM)),
         conductor_channel_mm=ground.radius_mm + clearance,
         coax=coax,
         funnel=funnel,
