@@ -1,16 +1,20 @@
 """`predict` as a user runs it: document, table, files, exit status, start-up, and every bad input."""
 
+import contextlib
+import io
 import json
 import os
 import subprocess
 import sys
 from dataclasses import replace
 from pathlib import Path
+from unittest import mock
 
 import pytest
 import samples
 import skrf
 
+from boomwright import cli
 from boomwright.design.model import Spec
 from boomwright.design.tomlfile import write_design
 
@@ -38,9 +42,19 @@ FILES = {
 
 
 def boomwright(*arguments: str, cwd: Path) -> subprocess.CompletedProcess[str]:
-    return subprocess.run(
-        [sys.executable, "-m", "boomwright", *arguments], cwd=cwd, capture_output=True, text=True, check=False
-    )
+    """The command line from its entry point on, in this process: a start a case would take most of the time."""
+    out, err = io.StringIO(), io.StringIO()
+    argv = ["boomwright", *arguments]
+    with (
+        contextlib.chdir(cwd),
+        contextlib.redirect_stdout(out),
+        contextlib.redirect_stderr(err),
+        mock.patch.object(sys, "argv", argv),
+        pytest.raises(SystemExit) as end,
+    ):
+        cli.main()
+    status = end.value.code if isinstance(end.value.code, int) else 0
+    return subprocess.CompletedProcess(argv, status, out.getvalue(), err.getvalue())
 
 
 @pytest.fixture
@@ -84,7 +98,6 @@ def test_the_table_is_the_document(place: Path) -> None:
     assert [line for line in lines if line.startswith("warning: ")] == [f"warning: {w}" for w in figures["warnings"]]
 
 
-@pytest.mark.slow
 def test_out_holds_tables_charts_and_a_file_a_general_library_reads(place: Path) -> None:
     done = boomwright("predict", "good.toml", "--out", "rf", "--json", cwd=place)
     assert (done.returncode, done.stderr) == (0, "")
