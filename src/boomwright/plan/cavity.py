@@ -191,9 +191,8 @@ def _part(run: Run, first: float, last: float) -> Run:
     """A run between two shares of its length."""
     if first == 0.0 and last == 1.0:
         return run
-    start, middle, end = (
-        tuple(map(float, p)) for p in places_along(run, np.array([first, (first + last) / 2.0, last]))
-    )
+    places = places_along(run, np.array([first, (first + last) / 2.0, last]))
+    start, middle, end = ((float(x), float(y), float(z)) for x, y, z in places)
     return replace(
         run,
         start=start,
