@@ -59,6 +59,30 @@ def quarter_rod(rod, around, along):
     return vertices, np.array(triangles)
 
 
+def quarter_folded(folded, around, along):
+    """The same quarter of a flat folded dipole whose ends are half circles; about `along` cells on each side."""
+    radius_m, bend_m = folded.radius_m, folded.spacing_m / 2
+    outer = radius_m * (1 + (np.pi / (2 * around)) ** 2 / 3)
+    straight = folded.length_m / 2 - radius_m - bend_m
+    side = np.concatenate([np.linspace(0, folded.gap_m / 2, 3)[:-1], np.linspace(folded.gap_m / 2, straight, along)])
+    turn = np.linspace(0, np.pi, max(6, along // 2 + 2))[1:-1]
+    x = np.concatenate([np.zeros(len(side)), bend_m * (1 - np.cos(turn)), np.full(along, 2 * bend_m)])
+    y = np.concatenate([side, straight + bend_m * np.sin(turn), np.linspace(straight, 0, along)])
+    heading = np.concatenate([np.zeros(len(side)), turn, np.full(along, np.pi)])
+    phi = np.arange(around + 1) * np.pi / around
+    spoke_x = np.outer(np.cos(heading), np.cos(phi)) * outer
+    spoke_y = np.outer(-np.sin(heading), np.cos(phi)) * outer
+    rows = np.stack(
+        [folded.at_m + x[:, None] + spoke_x, y[:, None] + spoke_y, np.tile(outer * np.sin(phi), (len(x), 1))], axis=-1
+    )
+    width, triangles = around + 1, []
+    for i in range(len(x) - 1):
+        for j in range(around):
+            a, b, c, d = i * width + j, i * width + j + 1, (i + 1) * width + j, (i + 1) * width + j + 1
+            triangles += [(a, b, c), (b, d, c)] if (i + j) % 2 == 0 else [(a, d, c), (a, b, d)]
+    return rows.reshape(-1, 3), np.array(triangles)
+
+
 def edge_functions(vertices, triangles):
     """Signed incidence (T, E) for each local edge, with edge lengths; edges on z = 0 carry nothing, on y = 0 do."""
     seen: dict[tuple[int, int], list[tuple[int, int]]] = {}
@@ -146,9 +170,9 @@ def areas(corners):
 
 
 def solve_rods(rods, frequency_hz, around=6, along=12):
-    """Solve perfect, parallel, coplanar rods (objects with at_m, length_m, radius_m, gap_m), one of them fed."""
+    """Solve perfect, parallel, coplanar rods (and a flat folded dipole with half-circle ends), one of them fed."""
     k = 2 * np.pi * frequency_hz / SPEED_M_S
-    parts = [quarter_rod(rod, around, along) for rod in rods]
+    parts = [(quarter_folded if hasattr(rod, "spacing_m") else quarter_rod)(rod, around, along) for rod in rods]
     shifts = np.concatenate([[0], np.cumsum([len(v) for v, _ in parts])])
     vertices = np.concatenate([v for v, _ in parts])
     triangles = np.concatenate([t + s for (_, t), s in zip(parts, shifts, strict=False)])

@@ -8,7 +8,8 @@ Harmonic m = 0 always; m = 1 on request [Mautz1969]: with t along the generating
 
 T linear and P constant on an element, so that the charge is constant too. Means over both azimuths leave the ring
 harmonics g0, g1, g2 of the kernel: T with T along the axis and charge with charge g1 / 2, P with P and radial T with
-radial T (g0 + g2) / 4, radial T with P (g2 - g0) / 4; for m = 0 along the axis and charge g0, radial g1 [Harrington1968].
+radial T (g0 + g2) / 4, radial T with P (g2 - g0) / 4. For m = 0: along the axis and charge g0, radial g1
+[Harrington1968].
 """
 
 from __future__ import annotations
