@@ -69,6 +69,12 @@ def facing_m(conductor: Folded | Loop) -> float:
     return conductor.length_m / math.pi if conductor.shape == "circle" else _side_m(conductor)
 
 
+def tightest_bend_radii(conductor: Folded | Loop) -> float:
+    """Smallest bend radius on the axis, counted in radii of the conductor there."""
+    stretches = outline(conductor).stretches
+    return min(s.length_m / abs(s.turn_rad) / s.radius_m for s in stretches if s.turn_rad != 0.0)
+
+
 def _axis_bend_m(folded: Folded) -> float:
     other_m = folded.radius_m if folded.other_radius_m is None else folded.other_radius_m
     half_m = folded.spacing_m / 2.0

@@ -2,14 +2,18 @@
 
 from __future__ import annotations
 
+import math
+
 from boomwright.rf.arrays import wavenumber_rad_m
 from boomwright.rf.clearance import spacings
 from boomwright.rf.conductors import Rod, Wires
+from boomwright.rf.outline import tightest_bend_radii
 
 THICKEST_KA = 0.3
 NEAREST_RADII = 3.0
 CLOSE_RADII = 10.0
 SHORTEST_DIAMETERS = 3.0
+TIGHTEST_BEND_RADII = 4.0
 SWEEP_SPAN = (0.5, 1.5)
 BALANCE_ALLOWED = 0.01
 
@@ -28,6 +32,12 @@ def geometry_warnings(wires: Wires, frequency_hz: float) -> tuple[str, ...]:
         if isinstance(conductor, Rod) and conductor.length_m < SHORTEST_DIAMETERS * 2.0 * conductor.radius_m:
             found.append(
                 f"{conductor.tag}: {conductor.length_m * 1e3:.1f} mm is shorter than {SHORTEST_DIAMETERS:.0f} diameters"
+            )
+        bend = tightest_bend_radii(conductor) if not isinstance(conductor, Rod) else math.inf
+        if bend < TIGHTEST_BEND_RADII:
+            found.append(
+                f"{conductor.tag}: bends of {bend:.1f} conductor radii on the axis, tighter than "
+                f"{TIGHTEST_BEND_RADII:.0f}; crowding inside them is not solved, impedance may be several percent off"
             )
     for first, second, distance_m, a, b in spacings(wires):
         if distance_m < NEAREST_RADII * max(a, b):
