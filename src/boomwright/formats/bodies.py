@@ -13,7 +13,7 @@ from typing import Any
 import numpy as np
 
 from boomwright.errors import MeasureError
-from boomwright.formats import conductors
+from boomwright.formats import conductors, gaps
 from boomwright.formats.brep import FaceView, ReadBody, StepReading, Vector, exact_box, volume_mm3
 
 __all__ = ["MEASURES", "TOUCH_MM3", "extent_of", "overrun_of", "volume_mm3"]
@@ -241,6 +241,7 @@ MEASURES: dict[str, Callable[[Any, Arguments, Sequence[Any]], float]] = {
     "hole": measure_groove,
     "rod": conductors.measure_rod,
     "driven": conductors.measure_driven,
+    "free_mm": gaps.measure_free_in_bodies,
 }
 
 

@@ -11,7 +11,7 @@ from typing import Any
 import numpy as np
 
 from boomwright.errors import CatalogueError, MeasureError
-from boomwright.formats import deviation, notches
+from boomwright.formats import deviation, gaps, notches
 from boomwright.formats.bodies import extent_of, overrun_of
 from boomwright.formats.brep import Vector
 from boomwright.formats.format import FileEntry
@@ -167,6 +167,7 @@ MEASURES: dict[str, Callable[[Any, Mapping[str, Any], Sequence[Any]], float]] = 
     "coverage_mm": measure_coverage,
     "unit_mm": measure_unit,
     "same_as_mm": measure_same_as,
+    "free_mm": gaps.measure_free_in_mesh,
 }
 
 

@@ -9,6 +9,7 @@ from boomwright.design.rules import require_boom
 from boomwright.errors import Fault, PlanFault
 from boomwright.plan.comb import CombPlan, plan_comb
 from boomwright.plan.cradle import CradlePlan, cradle_left_out, plan_cradle
+from boomwright.plan.gauge import plan_gauge
 from boomwright.plan.mould import MouldPlan, plan_mould
 from boomwright.plan.seat import SeatPlan, plan_seat
 from boomwright.plan.size import Size
@@ -63,5 +64,6 @@ def make_plan(design: Design, shop: Shop) -> Plan:
         by_part["cradle"] = tuple(cradle_faults)
     _, stock_sizes, by_part["stock-plan"] = plan_stock(design, shop)
     _, wrap_sizes = plan_wrap(design, boom, wished)
-    sizes = [*sizes, *mould_sizes, *comb_sizes, *stock_sizes, *wrap_sizes]
+    _, gauge_sizes = plan_gauge(design, shop)
+    sizes = [*sizes, *mould_sizes, *comb_sizes, *stock_sizes, *wrap_sizes, *gauge_sizes]
     return Plan(design, shop, boom, wished, seat, comb, mould, tuple(sizes), laid, by_part)
