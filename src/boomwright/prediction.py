@@ -16,7 +16,7 @@ from boomwright.design.model import Design
 from boomwright.design.tomlfile import LEAST_MHZ, MOST_MHZ, load_design
 from boomwright.errors import DesignFault, Fault, InputFault
 from boomwright.rf.conductors import Wires
-from boomwright.rf.prediction import POINTS, design_sensitivities, document
+from boomwright.rf.document import POINTS, design_sensitivities, document
 from boomwright.rf.solve import Model, Solution
 from boomwright.rf.sweep import Sweep, sweep
 from boomwright.rf.wires import FED_TAG, design_warnings, wires_of

@@ -89,8 +89,8 @@ def main():
     show(f"thick rods: fill + solve / LAPACK, y plane not used ({whole})", time_thick / lapack_solve(whole), 10)
     cold = (
         f"from pathlib import Path\nfrom boomwright.design.tomlfile import load_design\n"
-        f"from boomwright.rf.prediction import document, predict\n"
-        f"design = load_design(Path({str(DESIGN)!r}))\ndocument(design, predict(design))"
+        f"from boomwright.prediction import predict\n"
+        f"predict(load_design(Path({str(DESIGN)!r}))).as_json()"
     )
     floor = best(lambda: subprocess.run([sys.executable, "-c", "import numpy, scipy.linalg"], check=True))
     show("cold sweep of the 868 example / import numpy, scipy.linalg", best(lambda: run(cold)) / floor, 4)

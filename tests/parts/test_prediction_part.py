@@ -21,7 +21,7 @@ DESIGNS = [
     replace(DIPOLE, name="matched", feed=Feed(72.0)),
     replace(DIPOLE, name="short", driven=replace(DIPOLE.driven, length_mm=60.0)),
     replace(samples.GAUGE, name="narrow", band=Band(866.49, 866.51, 866.5)),
-    replace(samples.GAUGE, name="wide", band=Band(700.0, 1000.0, 866.5)),
+    replace(samples.GAUGE, name="wide", band=Band(500.0, 1200.0, 866.5)),
 ]
 
 

@@ -12,8 +12,8 @@ from boomwright.rf.sweep import nodes_needed, sweep
 
 @pytest.mark.parametrize(
     "build, low_hz, high_hz",
-    [(gauge_868, 840e6, 890e6), (gauge_868, 600e6, 1100e6), (camera_5g8, 5.5e9, 6.1e9)],
-    ids=["narrow", "wide", "thick"],
+    [(gauge_868, 840e6, 890e6), (gauge_868, 600e6, 1100e6), (camera_5g8, 5.5e9, 6.1e9), (gauge_868, 50e6, 1900e6)],
+    ids=["narrow", "wide", "thick", "decades"],
 )
 def test_interpolation_is_invisible(build, low_hz, high_hz):
     frequencies = tuple(np.linspace(low_hz, high_hz, 41))

@@ -13,7 +13,7 @@ if TYPE_CHECKING:
     from boomwright.plan.plan import Plan
 
 FILE = "bench/cut-list.csv"
-SHORTEST_MM = 0.5
+SHORTEST_MM, LONGEST_FINE_MM, LONGEST_MM = 0.5, 2000.0, 4000.0
 COLUMNS = ("tag", "count", "length_mm", "tolerance_mm", "diameter_mm", "material", "note")
 
 
@@ -64,7 +64,6 @@ def _row(tag: str, count: int, kind: tuple[float, float, str], note: str) -> tup
 
 def _tolerance(length_mm: float) -> str:
     """ISO 2768 fine where that table reaches (to 2 m), medium beyond it (to 4 m), else none."""
-    for grade, longest_mm in (("fine", 2000.0), ("medium", 4000.0)):
-        if SHORTEST_MM <= length_mm <= longest_mm:
-            return f"{general_tolerance_mm(length_mm, grade):g}"
-    return ""
+    if not SHORTEST_MM <= length_mm <= LONGEST_MM:
+        return ""
+    return f"{general_tolerance_mm(length_mm, 'fine' if length_mm <= LONGEST_FINE_MM else 'medium'):g}"

@@ -22,6 +22,9 @@ from boomwright.rf.validity import balance_warning, crowding_warnings, geometry_
 INTERPOLATION_ERROR = 1e-8
 STORED_NUMBERS_MOST = 20_000_000
 SPOT_CHECKS = 2
+WIDEST_RATIO = 3.0
+"""Widest sweep that is interpolated in one piece: over a decade k and 1 / k are no polynomials any more."""
+
 REDUCTION_ERROR = 1e-5
 
 
@@ -128,6 +131,9 @@ def sweep(
 def solve_all(model: Model, frequencies_hz: tuple[float, ...]) -> tuple[Solution, ...]:
     """Solve a model at ascending frequencies [Hz], filling the matrix at as few of them as that takes."""
     low, high = frequencies_hz[0], frequencies_hz[-1]
+    if high > WIDEST_RATIO * low:
+        lower = tuple(f for f in frequencies_hz if f < math.sqrt(low * high))
+        return solve_all(model, lower) + solve_all(model, frequencies_hz[len(lower) :])
     count = nodes_needed(model.pieces, low, high)
     unknowns = len(model.excitation)
     if count >= len(frequencies_hz) or count * unknowns**2 > STORED_NUMBERS_MOST:

@@ -8,41 +8,13 @@ from typing import Any
 import numpy as np
 
 from boomwright.design.model import Design
-from boomwright.errors import DesignFault, Fault
-from boomwright.rf.basis import Options
 from boomwright.rf.sensitivity import Sensitivity, sensitivities
 from boomwright.rf.solve import Model
-from boomwright.rf.sweep import Sweep, sweep
+from boomwright.rf.sweep import Sweep
 from boomwright.rf.wires import design_warnings, wires_of
 from boomwright.units import MM_PER_M, hz_from_mhz
 
 POINTS = 61
-LEAST_WIDENING = 0.02
-
-
-def band_frequencies_mhz(design: Design, points: int = POINTS) -> tuple[float, ...]:
-    """Frequencies [MHz] over the band and its own width (at least 2 % of the centre) on each side, edges included.
-
-    points  at least 4: the ends of the sweep and the edges of the band are always among them
-    """
-    if points < 4:
-        raise DesignFault([Fault("points", f"{points} points", "ask for at least 4")])
-    band = design.band
-    width = max(band.high_mhz - band.low_mhz, LEAST_WIDENING * band.centre_mhz)
-    low, high = band.low_mhz - width, band.high_mhz + width
-    grid = np.linspace(low, high, points)
-    for edge in (band.low_mhz, band.high_mhz):
-        grid[int(np.argmin(np.abs(grid - edge)))] = edge
-    return tuple(float(value) for value in grid)
-
-
-def predict(
-    design: Design, at_mhz: tuple[float, ...] = (), points: int = POINTS, options: Options | None = None
-) -> Sweep:
-    """Solve a design at exactly these frequencies [MHz], or, without any, over its band (`band_frequencies_mhz`)."""
-    chosen = at_mhz or band_frequencies_mhz(design, points)
-    frequencies_hz = tuple(hz_from_mhz(value) for value in chosen)
-    return sweep(wires_of(design), frequencies_hz, design.feed.system_ohm, hz_from_mhz(design.band.centre_mhz), options)
 
 
 def design_sensitivities(design: Design, at_mhz: float | None = None) -> tuple[Sensitivity, ...]:
