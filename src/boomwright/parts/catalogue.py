@@ -22,6 +22,7 @@ _OWN = (
     "boomwright.parts.cradle:CradlePart",
     "boomwright.parts.mould:Mould",
     "boomwright.parts.comb:SpacingComb",
+    "boomwright.parts.former:FormerPart",
     "boomwright.parts.gauge:LengthGauge",
     "boomwright.parts.prediction:PredictionPart",
 )

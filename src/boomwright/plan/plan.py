@@ -9,6 +9,7 @@ from boomwright.design.rules import require_boom
 from boomwright.errors import Fault, PlanFault
 from boomwright.plan.comb import CombPlan, plan_comb
 from boomwright.plan.cradle import CradlePlan, cradle_left_out, plan_cradle
+from boomwright.plan.former import plan_former
 from boomwright.plan.gauge import plan_gauge
 from boomwright.plan.mould import MouldPlan, plan_mould
 from boomwright.plan.seat import SeatPlan, plan_seat
@@ -65,5 +66,6 @@ def make_plan(design: Design, shop: Shop) -> Plan:
     _, stock_sizes, by_part["stock-plan"] = plan_stock(design, shop)
     _, wrap_sizes = plan_wrap(design, boom, wished)
     _, gauge_sizes = plan_gauge(design, shop)
-    sizes = [*sizes, *mould_sizes, *comb_sizes, *stock_sizes, *wrap_sizes, *gauge_sizes]
+    _, former_sizes = plan_former(design, shop)
+    sizes = [*sizes, *mould_sizes, *comb_sizes, *stock_sizes, *wrap_sizes, *gauge_sizes, *former_sizes]
     return Plan(design, shop, boom, wished, seat, comb, mould, tuple(sizes), laid, by_part)
