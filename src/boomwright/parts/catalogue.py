@@ -24,6 +24,7 @@ _OWN = (
     "boomwright.parts.comb:SpacingComb",
     "boomwright.parts.former:FormerPart",
     "boomwright.parts.gauge:LengthGauge",
+    "boomwright.parts.guide:GrooveGuide",
     "boomwright.parts.prediction:PredictionPart",
 )
 

@@ -11,6 +11,7 @@ from boomwright.plan.comb import CombPlan, plan_comb
 from boomwright.plan.cradle import CradlePlan, cradle_left_out, plan_cradle
 from boomwright.plan.former import plan_former
 from boomwright.plan.gauge import plan_gauge
+from boomwright.plan.guide import plan_guide
 from boomwright.plan.mould import MouldPlan, plan_mould
 from boomwright.plan.seat import SeatPlan, plan_seat
 from boomwright.plan.size import Size
@@ -67,5 +68,6 @@ def make_plan(design: Design, shop: Shop) -> Plan:
     _, wrap_sizes = plan_wrap(design, boom, wished)
     _, gauge_sizes = plan_gauge(design, shop)
     _, former_sizes = plan_former(design, shop)
-    sizes = [*sizes, *mould_sizes, *comb_sizes, *stock_sizes, *wrap_sizes, *gauge_sizes, *former_sizes]
+    _, guide_sizes = plan_guide(design, boom, wished, shop)
+    sizes = [*sizes, *mould_sizes, *comb_sizes, *stock_sizes, *wrap_sizes, *gauge_sizes, *former_sizes, *guide_sizes]
     return Plan(design, shop, boom, wished, seat, comb, mould, tuple(sizes), laid, by_part)
