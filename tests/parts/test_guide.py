@@ -73,7 +73,7 @@ def test_sections_share_a_seat_and_fit_the_bed():
 def test_seats_too_far_apart_for_the_bed():
     shop = Shop(printer=Printer(bed_mm=(100.0, 100.0, 100.0)))
     reason = GrooveGuide().left_out(make_plan(LONG, shop))
-    assert reason == "two seats stand farther apart than the bed takes, 100 mm"
+    assert reason == "two seats stand farther apart than the bed takes, 100 mm: use the wrap template"
 
 
 @pytest.mark.parametrize("design", [samples.GAUGE, samples.TUBE_915], ids=lambda d: d.name)

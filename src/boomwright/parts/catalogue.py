@@ -25,6 +25,7 @@ _OWN = (
     "boomwright.parts.former:FormerPart",
     "boomwright.parts.gauge:LengthGauge",
     "boomwright.parts.guide:GrooveGuide",
+    "boomwright.parts.cut_block:CutBlockPart",
     "boomwright.parts.prediction:PredictionPart",
 )
 

@@ -83,7 +83,11 @@ def plan_guide(design: Design, boom: Boom, seat: Seat, shop: Shop) -> tuple[Guid
     bed = max(shop.printer.bed_mm[:2])
     sections = _sections(sorted(cuts, key=lambda c: c.at_mm), seats.start_mm, bed)
     if not cuts or sections is None:
-        found = "the boom has no seats" if not cuts else f"two seats stand farther apart than the bed takes, {bed:g} mm"
+        found = (
+            "the boom has no seats"
+            if not cuts
+            else f"two seats stand farther apart than the bed takes, {bed:g} mm: use the wrap template"
+        )
         return GuidePlan((), inner, roof, top, seats.start_mm, found), ()
     sizes = [Size("guide.channel_mm", 2.0 * inner, "mm", f"boom {boom.width_mm:g} + 2 x slide clearance")]
     for cut in cuts:

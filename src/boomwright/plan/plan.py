@@ -9,6 +9,7 @@ from boomwright.design.rules import require_boom
 from boomwright.errors import Fault, PlanFault
 from boomwright.plan.comb import CombPlan, plan_comb
 from boomwright.plan.cradle import CradlePlan, cradle_left_out, plan_cradle
+from boomwright.plan.cut_block import plan_cut_block
 from boomwright.plan.former import plan_former
 from boomwright.plan.gauge import plan_gauge
 from boomwright.plan.guide import plan_guide
@@ -68,6 +69,17 @@ def make_plan(design: Design, shop: Shop) -> Plan:
     _, wrap_sizes = plan_wrap(design, boom, wished)
     _, gauge_sizes = plan_gauge(design, shop)
     _, former_sizes = plan_former(design, shop)
+    _, block_sizes = plan_cut_block(design, shop)
     _, guide_sizes = plan_guide(design, boom, wished, shop)
-    sizes = [*sizes, *mould_sizes, *comb_sizes, *stock_sizes, *wrap_sizes, *gauge_sizes, *former_sizes, *guide_sizes]
+    sizes = [
+        *sizes,
+        *mould_sizes,
+        *comb_sizes,
+        *stock_sizes,
+        *wrap_sizes,
+        *gauge_sizes,
+        *former_sizes,
+        *guide_sizes,
+        *block_sizes,
+    ]
     return Plan(design, shop, boom, wished, seat, comb, mould, tuple(sizes), laid, by_part)
