@@ -77,5 +77,7 @@ def test_a_moved_rod_is_noticed(tmp_path):
 
 def test_a_hostile_title_stays_words(tmp_path):
     plan, reading = written(replace(samples.GAUGE, title="a) Tj ET /SEAT BMC 1 1 m 9 9 l S \\("), tmp_path)
-    assert next(w for w in reading.pages[0].words if "wrap template" in w).startswith("a) Tj ET /SEAT BMC 1 1 m 9 9 l S \\(: wrap template")
+    assert next(w for w in reading.pages[0].words if "wrap template" in w).startswith(
+        "a) Tj ET /SEAT BMC 1 1 m 9 9 l S \\(: wrap template"
+    )
     assert sum(line.layer == "SEAT" for line in reading.pages[0].lines) == len(plan.seat.grooves)

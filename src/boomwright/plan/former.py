@@ -196,7 +196,7 @@ def _marks(bends: tuple[Bend, ...], wire_mm: float, slide_mm: float, plate: tupl
 
 def _name(driven: Driven, x_mm: Span, y_mm: float) -> Label:
     """The wire's whole length, at the plate's left end on this baseline."""
-    text = f"DE {developed_length_mm(driven):.1f}"
+    text = f"={developed_length_mm(driven):.1f}"
     room = x_mm[1] - x_mm[0] - 2.0
     height = min(TEXT_MM, TEXT_MM * room / text_width_mm(text, TEXT_MM))
     return Label(text, x_mm[0] + 1.5, y_mm, height, BASE_MM)

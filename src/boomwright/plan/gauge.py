@@ -140,6 +140,6 @@ def _plate(kinds: Sequence[_Kind], slide_mm: float) -> GaugePlate:
 
 
 def _text(kind: _Kind, room_mm: float) -> str:
-    """What stands between the two slots of a length, the longest that fits: the no-go slot is the one with the nick."""
-    choices = [f"{kind.tags.split()[0]} {kind.length_mm:g}", f"{kind.length_mm:g}", ""]
+    """The length between its two slots, where it fits: every letter costs time, and the cut list has the tags."""
+    choices = [f"{kind.length_mm:g}", ""]
     return next(text for text in choices if text_width_mm(text, TEXT_MM) <= room_mm)
