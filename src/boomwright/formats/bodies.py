@@ -14,7 +14,7 @@ import numpy as np
 
 from boomwright.errors import MeasureError
 from boomwright.formats import conductors, gaps
-from boomwright.formats.brep import FaceView, ReadBody, StepReading, Vector, exact_box, volume_mm3
+from boomwright.formats.brep import FaceView, ReadBody, StepReading, Vector, exact_box, explore, volume_mm3
 
 __all__ = ["MEASURES", "TOUCH_MM3", "extent_of", "overrun_of", "volume_mm3"]
 
@@ -22,6 +22,9 @@ Arguments = Mapping[str, Any]
 
 TOUCH_MM3 = 1e-6
 """Common volumes below this are two faces that touch."""
+
+MOST_TOOLS, MOST_FACES = 6, 800
+"""A boolean of more than both is done in halves."""
 
 
 def measure_extent(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
@@ -88,7 +91,7 @@ def _distance_to_box(body: ReadBody, low: Vector, high: Vector) -> float:
     from OCP.gp import gp_Pnt
 
     high = np.maximum(high, low + 1e-6)
-    if any(_holds(solid, (low + high) / 2.0) for solid in body.solids):
+    if body.holds((low + high) / 2.0):
         return 0.0
     block = BRepPrimAPI_MakeBox(gp_Pnt(*map(float, low)), gp_Pnt(*map(float, high))).Shape()
     # The boxes' distance never exceeds the faces' own: nearest boxes first, stop when no better one can come.
@@ -100,17 +103,6 @@ def _distance_to_box(body: ReadBody, low: Vector, high: Vector) -> float:
             break
         best = min(best, BRepExtrema_DistShapeShape(block, body.faces[index].face).Value())
     return best
-
-
-def _holds(solid: Any, point: Vector) -> bool:
-    from OCP.BRepClass3d import BRepClass3d_SolidClassifier
-    from OCP.gp import gp_Pnt
-    from OCP.TopAbs import TopAbs_OUT
-
-    box = exact_box(solid)
-    if np.any(point < box[0]) or np.any(point > box[1]):
-        return False
-    return bool(BRepClass3d_SolidClassifier(solid, gp_Pnt(*map(float, point)), 1e-7).State() != TopAbs_OUT)
 
 
 @dataclass(frozen=True)
@@ -172,27 +164,73 @@ def _in_design_frame(file: int, body: ReadBody, frame: Any) -> list[_Placed]:
 
 
 def _common_mm3(one: _Placed, others: Sequence[_Placed]) -> float:
-    """Volume of `one` that lies in any of the others; one boolean when the others cannot touch each other."""
-    from OCP.BRepAlgoAPI import BRepAlgoAPI_Common
-    from OCP.TopTools import TopTools_ListOfShape
+    """Volume of `one` that lies in any of the others; one boolean when the others cannot touch each other.
 
+    A boolean's time grows with faces times tools: a long body is halved across until its parts are small.
+    """
+    if len(others) > MOST_TOOLS and _face_count(one.solid) > MOST_FACES:
+        return sum(_common_in_half_mm3(one, others, upper) for upper in (False, True))
     apart = all(np.any(np.minimum(a.high, b.high) < np.maximum(a.low, b.low)) for a, b in combinations(others, 2))
     total = 0.0
     for group in [list(others)] if apart else [[other] for other in others]:
-        arguments, tools = TopTools_ListOfShape(), TopTools_ListOfShape()
-        arguments.Append(one.solid)
-        for other in group:
-            tools.Append(other.solid)
-        common = BRepAlgoAPI_Common()
-        common.SetArguments(arguments)
-        common.SetTools(tools)
-        common.SetNonDestructive(True)
-        common.Build()
-        if not common.IsDone():
-            raise MeasureError("the kernel could not decide whether bodies overlap")
-        volume = volume_mm3(common.Shape())
+        volume = volume_mm3(_common(one.solid, [other.solid for other in group]))
         total += volume if volume > TOUCH_MM3 else 0.0
     return total
+
+
+def _common_in_half_mm3(one: _Placed, others: Sequence[_Placed], upper: bool) -> float:
+    """The same within one half of `one`, cut across its longest extent."""
+    axis = int(np.argmax(one.high - one.low))
+    low, high = one.low.copy(), one.high.copy()
+    (low if upper else high)[axis] = (one.low[axis] + one.high[axis]) / 2.0
+    near = [part for other in others if _meets(other, low, high) for part in _cropped(other, low, high)]
+    return sum(
+        _common_mm3(part, [other for other in near if _meets(other, part.low, part.high)])
+        for part in _cropped(one, low, high)
+    )
+
+
+def _meets(placed: _Placed, low: Vector, high: Vector) -> bool:
+    return bool(np.all(np.minimum(placed.high, high) > np.maximum(placed.low, low)))
+
+
+def _cropped(placed: _Placed, low: Vector, high: Vector) -> list[_Placed]:
+    """What of a solid lies in a box [mm]."""
+    from OCP.BRepPrimAPI import BRepPrimAPI_MakeBox
+    from OCP.gp import gp_Pnt
+    from OCP.TopAbs import TopAbs_SOLID
+
+    if np.all(placed.low >= low) and np.all(placed.high <= high):
+        return [placed]
+    low, high = np.maximum(low, placed.low - 1.0), np.minimum(high, placed.high + 1.0)
+    block = BRepPrimAPI_MakeBox(gp_Pnt(*map(float, low)), gp_Pnt(*map(float, high))).Shape()
+    parts = explore(_common(placed.solid, [block]), TopAbs_SOLID)
+    return [_Placed(placed.file, part, *exact_box(part)) for part in parts]
+
+
+def _common(solid: Any, tools: Sequence[Any]) -> Any:
+    """What a solid has in common with any of several others, as the kernel finds it."""
+    from OCP.BRepAlgoAPI import BRepAlgoAPI_Common
+    from OCP.TopTools import TopTools_ListOfShape
+
+    arguments, others = TopTools_ListOfShape(), TopTools_ListOfShape()
+    arguments.Append(solid)
+    for tool in tools:
+        others.Append(tool)
+    common = BRepAlgoAPI_Common()
+    common.SetArguments(arguments)
+    common.SetTools(others)
+    common.SetNonDestructive(True)
+    common.Build()
+    if not common.IsDone():
+        raise MeasureError("the kernel could not decide whether bodies overlap")
+    return common.Shape()
+
+
+def _face_count(solid: Any) -> int:
+    from OCP.TopAbs import TopAbs_FACE
+
+    return len(explore(solid, TopAbs_FACE))
 
 
 def _round_faces(body: ReadBody, at_mm: float) -> FaceView:

@@ -16,6 +16,9 @@ from boomwright.errors import MeasureError
 Vector = NDArray[np.float64]
 Kind = Literal["plane", "cylinder", "cone", "sphere", "torus", "general"]
 
+ON_SURFACE_MM = 1e-7
+"""Points this near to a surface lie on it."""
+
 VOLUME_TOLERANCE = 1e-6
 """Relative error asked of the kernel's integration."""
 
@@ -72,7 +75,7 @@ class ReadBody:
         """The kernel's solids of this body."""
         from OCP.TopAbs import TopAbs_SOLID
 
-        return tuple(_explore(self.wrapped, TopAbs_SOLID))
+        return tuple(explore(self.wrapped, TopAbs_SOLID))
 
     @cached_property
     def solid_boxes(self) -> tuple[Vector, ...]:
@@ -92,7 +95,25 @@ class ReadBody:
         """Every face, in the file's order."""
         from OCP.TopAbs import TopAbs_FACE
 
-        return tuple(_view(face) for face in _explore(self.wrapped, TopAbs_FACE))
+        return tuple(_view(face) for face in explore(self.wrapped, TopAbs_FACE))
+
+    @cached_property
+    def _classifiers(self) -> tuple[Any, ...]:
+        from OCP.BRepClass3d import BRepClass3d_SolidClassifier
+
+        return tuple(BRepClass3d_SolidClassifier(solid) for solid in self.solids)
+
+    def holds(self, point: Vector) -> bool:
+        """Whether a point lies in the material of one of the solids, or on its surface."""
+        from OCP.gp import gp_Pnt
+        from OCP.TopAbs import TopAbs_OUT
+
+        for box, classifier in zip(self.solid_boxes, self._classifiers, strict=True):
+            if np.all(point >= box[0]) and np.all(point <= box[1]):
+                classifier.Perform(gp_Pnt(*map(float, point)), ON_SURFACE_MM)
+                if classifier.State() != TopAbs_OUT:
+                    return True
+        return False
 
 
 @dataclass(frozen=True)
@@ -139,7 +160,7 @@ def volume_mm3(shape: Any) -> float:
     return float(properties.Mass())
 
 
-def _explore(shape: Any, kind: Any) -> list[Any]:
+def explore(shape: Any, kind: Any) -> list[Any]:
     from OCP.TopAbs import TopAbs_FACE
     from OCP.TopExp import TopExp_Explorer
     from OCP.TopoDS import TopoDS
