@@ -106,7 +106,7 @@ def test_a_cradle_too_long_for_the_bed_names_the_overrun() -> None:
     assert faults == [
         f"printer.bed_mm: the cradle is {x1 - x0:.1f} x {y1 - y0:.1f} x {z1:.1f} mm: {x1 - x0 - 180.0:.1f} mm too long "
         "for the bed of 180 x 180 x 200\n"
-        "  fix: use a printer with a larger bed, shorten boom or rods, or leave the cradle out with --only"
+        "  fix: use a printer with a larger bed, shorten boom or rods, or name the other parts with --only"
     ]
 
 

@@ -13,15 +13,15 @@ def driven_faults(design: Design) -> list[Fault]:
     """Every rule that the driven element breaks."""
     driven = design.driven
     if driven.form == "straight":
-        return _straight_faults(driven)
+        return _gap_faults(driven)
     if driven.form == "folded":
-        return _folded_faults(driven)
+        return _gap_faults(driven) or _folded_faults(driven)
     if driven.form == "loop":
         return _loop_faults(driven) or _clearance_faults(design)
     return []
 
 
-def _straight_faults(driven: Driven) -> list[Fault]:
+def _gap_faults(driven: Driven) -> list[Fault]:
     assert driven.length_mm is not None
     if driven.gap_mm >= driven.length_mm:
         found = f"{driven.gap_mm:g} is not less than length_mm {driven.length_mm:g}"

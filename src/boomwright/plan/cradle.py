@@ -419,6 +419,6 @@ def _bed_faults(plan: CradlePlan, shop: Shop) -> list[Fault]:
         Fault(
             "printer.bed_mm",
             f"the cradle is {x:.1f} x {y:.1f} x {z:.1f} mm: {words} for the bed of {bed_x:g} x {bed_y:g} x {bed_z:g}",
-            "use a printer with a larger bed, shorten boom or rods, or leave the cradle out with --only",
+            "use a printer with a larger bed, shorten boom or rods, or name the other parts with --only",
         )
     ]
