@@ -47,7 +47,7 @@ class Step(Format):
         assert isinstance(piece, SolidPiece)
         placed = [(body, place(body.shape, piece.frame)) for body in piece.bodies]
         _transfer(piece.stem, placed, path)
-        text = _numbered_anew(_without_noise(_in_ascii(path.read_text("utf-8"))))
+        text = _numbered_anew(_without_noise(_unwrapped(_in_ascii(path.read_text("utf-8")))))
         path.write_text(_with_styles(text, [body.colour for body in piece.bodies]), "ascii", newline="\n")
 
     def read(self, path: Path) -> StepReading:
@@ -149,6 +149,11 @@ def _document(title: str, placed: Sequence[tuple[Body, Any]]) -> Any:
 def _in_ascii(text: str) -> str:
     """Letters beyond ASCII as ISO 10303-21 wants them, in hexadecimal."""
     return re.sub(r"[^\x00-\x7f]+", lambda found: f"\\X2\\{found[0].encode('utf-16-be').hex().upper()}\\X0\\", text)
+
+
+def _unwrapped(text: str) -> str:
+    """One line a record: where the kernel breaks lines depends on the length of what is mended below."""
+    return re.sub(r"\n +", "", text)
 
 
 def _without_noise(text: str) -> str:
