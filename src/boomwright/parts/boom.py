@@ -6,6 +6,7 @@ import math
 from itertools import pairwise
 from typing import TYPE_CHECKING
 
+from boomwright.parts.contour import rectangle
 from boomwright.parts.palette import colour_of
 from boomwright.parts.solids import Shape, box, cut, cylinder
 from boomwright.pieces import (
@@ -120,17 +121,17 @@ def _groove_tool(groove: Groove, seat: SeatPlan) -> Shape:
 
 def _drawing(plan: Plan) -> DrawingPiece:
     seat, half = plan.seat, plan.seat.half_width_mm
-    marks = [Mark(_rectangle((seat.start_mm, seat.end_mm), (-half, half)), "OUTLINE")]
+    marks = [Mark(rectangle((seat.start_mm, seat.end_mm), (-half, half)), "OUTLINE")]
     seats = [(g.at_mm, g.radius_mm, f"GROOVE-DEPTH-{g.depth_mm:.2f}") for g in seat.grooves]
     seats += [(h.at_mm, h.diameter_mm / 2.0, f"HOLE-DIAMETER-{h.diameter_mm:.2f}") for h in seat.holes]
     for at_mm, r, layer in seats:
-        marks.append(Mark(_rectangle((at_mm - r, at_mm + r), (-half, half)), layer))
+        marks.append(Mark(rectangle((at_mm - r, at_mm + r), (-half, half)), layer))
         marks.append(Mark(Contour(((at_mm, -half - 2.0, 0.0), (at_mm, half + 2.0, 0.0)), closed=False), "CENTRE"))
     for groove in seat.grooves:
         if groove.pocket:
             y = min(groove.pocket.half_y_mm, half)
             x = (groove.at_mm - groove.pocket.half_x_mm, groove.at_mm + groove.pocket.half_x_mm)
-            marks.append(Mark(_rectangle(x, (-y, y)), f"POCKET-DEPTH-{groove.depth_mm:.2f}"))
+            marks.append(Mark(rectangle(x, (-y, y)), f"POCKET-DEPTH-{groove.depth_mm:.2f}"))
     arm = DATUM_ARM_MM
     marks.append(Mark(Contour(((-arm, 0.0, 0.0), (arm, 0.0, 0.0)), closed=False), "DATUM"))
     marks.append(Mark(Contour(((0.0, -arm, 0.0), (0.0, arm, 0.0)), closed=False), "DATUM"))
@@ -140,8 +141,3 @@ def _drawing(plan: Plan) -> DrawingPiece:
     for tag, at_mm in [(g.tag, g.at_mm) for g in seat.grooves] + [(h.tag, h.at_mm) for h in seat.holes]:
         notes.append(Lettering(tag, at_mm - 1.0, half + 3.0, 2.5, "CENTRE"))
     return DrawingPiece("boom", "cnc", tuple(marks), tuple(notes))
-
-
-def _rectangle(x_mm: tuple[float, float], y_mm: tuple[float, float]) -> Contour:
-    (x0, x1), (y0, y1) = x_mm, y_mm
-    return Contour(((x0, y0, 0.0), (x1, y0, 0.0), (x1, y1, 0.0), (x0, y1, 0.0)))

@@ -6,6 +6,7 @@ import math
 from dataclasses import dataclass
 from itertools import pairwise
 
+from boomwright.design.driven_rules import boom_top_mm
 from boomwright.design.model import Boom, Design, Seat
 from boomwright.errors import Fault
 from boomwright.plan.size import Size
@@ -110,11 +111,10 @@ def plan_seat(design: Design, boom: Boom, seat: Seat) -> tuple[SeatPlan, list[Si
             f"tail {boom.tail_mm:g} + span {max(ends) - min(ends):g} + nose {boom.nose_mm:g}",
         )
     ]
+    top = boom_top_mm(design, boom)
     if seat.kind == "groove":
-        top = max((c.outer_mm for c in crossings), default=0.0) / 2.0
         sizes.append(Size("boom.top_mm", top, "mm", "datum + half the thickest conductor, which lies flush"))
     else:
-        top = half
         sizes.append(Size("boom.top_mm", top, "mm", "half the boom's width: datum plane = the boom's middle"))
     grooves = _grooves(crossings, seat, top, half) if seat.kind == "groove" else ()
     holes = tuple(_hole(c, seat) for c in crossings if c.gap_mm is None) if seat.kind == "through" else ()

@@ -15,7 +15,7 @@ def coat_elastance_m_f(coat: Coat, radius_m: float) -> complex:
     radius_m  of the bare conductor, above 0
 
     Returns (1 / eps - 1 / eps0) ln(b / a) / (2 pi), b the outer radius: 0 without thickness and at permittivity 1.
-    Good while the coat is thin beside the wavelength inside it [Richmond1976] eq. 10.
+    Good while the coat is thin beside the wavelength inside it [Richmond1976].
     """
     permittivity = coat.permittivity * (1.0 - 1j * coat.loss_tangent)
     thickness = math.log1p(coat.thickness_m / radius_m)
