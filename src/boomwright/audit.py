@@ -9,63 +9,28 @@ from __future__ import annotations
 import json
 import math
 from collections.abc import Iterable
+from concurrent.futures import Executor
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
 from boomwright import electrical
+from boomwright.crew import Alone
+from boomwright.design.model import Design
 from boomwright.design.tomlfile import load_design
 from boomwright.electrical import Electrical, read_back
-from boomwright.errors import AccessError, CatalogueError, Fault, InputFault, MeasureError
+from boomwright.errors import AccessError, Fault, InputFault, MeasureError
 from boomwright.formats.catalogue import FORMATS
-from boomwright.formats.format import Format
+from boomwright.judging import DIGITS, Finding, bench_for, judge_all
 from boomwright.manifest import FILE as MANIFEST_FILE
 from boomwright.manifest import Manifest, read_manifest, sum_of
 from boomwright.parts.catalogue import PARTS
-from boomwright.pieces import Expectation, Probe
+from boomwright.pieces import Expectation
 from boomwright.plan.plan import Plan, make_plan
 from boomwright.shop.tomlfile import load_shop
 
 FILE = "audit.json"
 DESIGN_FILE, SHOP_FILE = "design.toml", "shop.toml"
-DIGITS = 6
-"""Decimals of a measured figure in the report: a nanometre is noise."""
-
-
-@dataclass(frozen=True)
-class Finding:
-    """One quantity of one file: what was expected, what was measured (None = it could not be), and whether it holds."""
-
-    file: str
-    what: str
-    expected: float | str
-    measured: float | str | None
-    allowed: float
-    unit: str
-    ok: bool
-    reason: str = ""
-
-    def as_json(self) -> dict[str, Any]:
-        """The finding as the report writes it."""
-        document = {
-            "file": self.file,
-            "what": self.what,
-            "expected": self.expected,
-            "measured": self.measured,
-            "allowed": self.allowed,
-            "unit": self.unit,
-            "ok": self.ok,
-        }
-        return document | ({"reason": self.reason} if self.reason else {})
-
-    def __str__(self) -> str:
-        if self.measured is None:
-            return f"{self.file}: {self.what}: {self.reason or 'missing'}"
-        unit = f" {self.unit}" if self.unit else ""
-        expected, measured = _shown(self.expected), _shown(self.measured)
-        return (
-            f"{self.file}: {self.what}: expected {expected}{unit}, measured {measured}{unit}, allowed {self.allowed:g}"
-        )
 
 
 @dataclass(frozen=True)
@@ -93,8 +58,13 @@ class Audit:
         return json.dumps(document, indent=1, ensure_ascii=True, allow_nan=False) + "\n"
 
 
-def audit_folder(folder: Path) -> Audit:
-    """Measure every file of an output folder. Raises InputFault when `folder` is no output folder at all."""
+def audit_folder(folder: Path, executor: Executor | None = None) -> Audit:
+    """Measure every file of an output folder.
+
+    executor  who measures, None = this process; others must not have measured a folder of that name before
+
+    Raises InputFault when `folder` is no output folder at all.
+    """
     if not folder.is_dir():
         raise InputFault([Fault("DIR", f"{folder} is not a folder", "name the folder that make wrote")])
     if not (folder / MANIFEST_FILE).is_file() and not (folder / DESIGN_FILE).is_file():
@@ -111,11 +81,13 @@ def audit_folder(folder: Path) -> Audit:
         file = next((f.file for f in getattr(error, "faults", ()) if f.file), DESIGN_FILE)
         return Audit((*findings, _broken(Path(file).name, "readable", str(error))))
     findings += _plan_findings(plan, manifest)
-    bench = _Bench(folder)
-    findings += bench.judge(_expectations(plan, manifest))
-    solved = read_back(plan.design, lambda probe: bench.measure(electrical.FILE, probe))
-    findings += _electrical_findings(solved)
-    return Audit(tuple(findings), solved)
+    folder, executor = folder.absolute(), executor or Alone()
+    bench_for.cache_clear()
+    solved = executor.submit(_solve, folder, plan.design)
+    findings += judge_all(folder, list(_expectations(plan, manifest)), executor)
+    bench_for.cache_clear()
+    findings += _electrical_findings(solved.result())
+    return Audit(tuple(findings), solved.result())
 
 
 def _expectations(plan: Plan, manifest: Manifest) -> Iterable[Expectation]:
@@ -125,6 +97,10 @@ def _expectations(plan: Plan, manifest: Manifest) -> Iterable[Expectation]:
     for entry in manifest.entries:
         if entry.format in FORMATS:
             yield from FORMATS[entry.format].expect(entry, plan.shop)
+
+
+def _solve(folder: Path, design: Design) -> Electrical:
+    return read_back(design, lambda probe: bench_for(folder).measure(electrical.FILE, probe))
 
 
 def _sums(folder: Path, manifest: Manifest) -> Iterable[Finding]:
@@ -160,61 +136,5 @@ def _electrical_findings(found: Electrical) -> Iterable[Finding]:
         yield Finding(electrical.FILE, each.what, expected, measured, each.allowed, each.unit, each.ok)
 
 
-class _Bench:
-    """Opens each file once and measures it as often as asked."""
-
-    def __init__(self, folder: Path) -> None:
-        self._folder = folder
-        self._readings: dict[str, Any] = {}
-        self._formats = {entry.suffix: entry for entry in FORMATS}
-
-    def judge(self, expectations: Iterable[Expectation]) -> Iterable[Finding]:
-        """A finding for every expectation."""
-        for expectation in expectations:
-            yield self._judge_one(expectation)
-
-    def _judge_one(self, e: Expectation) -> Finding:
-        expected = round(e.expected, DIGITS)
-        try:
-            measured = self.measure(e.file, e.probe)
-        except MeasureError as error:
-            return Finding(e.file, e.what, expected, None, e.allowed, e.unit, False, str(error))
-        if not math.isfinite(measured):
-            return Finding(e.file, e.what, expected, None, e.allowed, e.unit, False, "no finite value")
-        low = e.rule == "at_most" or measured >= e.expected - e.allowed
-        high = e.rule == "at_least" or measured <= e.expected + e.allowed
-        # A zero that came out as -0.0 must not change the report's bytes.
-        return Finding(e.file, e.what, expected, round(measured, DIGITS) + 0.0, e.allowed, e.unit, low and high)
-
-    def measure(self, file: str, probe: Probe) -> float:
-        """One quantity of one file; MeasureError when the file shows no such thing."""
-        reading = self._read(file)
-        also = [self._read(path) for path in probe.also]
-        return float(self._format(file).measure(reading, probe, also))
-
-    def _format(self, path: str) -> Format:
-        suffix = Path(path).suffix
-        if suffix not in self._formats:
-            raise MeasureError(f"no format reads {suffix} files")
-        return self._formats[suffix]
-
-    def _read(self, path: str) -> Any:
-        if path not in self._readings:
-            try:
-                if not (self._folder / path).is_file():
-                    raise MeasureError(f"{path} is missing")
-                self._readings[path] = self._format(path).read(self._folder / path)
-            except (MeasureError, CatalogueError) as error:
-                self._readings[path] = MeasureError(str(error))
-        reading = self._readings[path]
-        if isinstance(reading, MeasureError):
-            raise reading
-        return reading
-
-
 def _broken(file: str, what: str, reason: str) -> Finding:
     return Finding(file, what, "yes", None, 0.0, "", False, reason)
-
-
-def _shown(value: float | str) -> str:
-    return value if isinstance(value, str) else f"{value:.6g}"

@@ -26,6 +26,10 @@ app = typer.Typer(
 )
 
 Quiet = Annotated[bool, typer.Option("-q", "--quiet", help="Print faults and failures only.")]
+Jobs = Annotated[
+    int | None,
+    typer.Option(min=1, envvar="BOOMWRIGHT_JOBS", help="Processes that work beside each other; absent = as fits."),
+]
 AsJson = Annotated[bool, typer.Option("--json", help="Print one JSON document on stdout and nothing else there.")]
 
 
@@ -57,15 +61,18 @@ def _root(
 @app.command()
 def make(
     design: Annotated[Path, typer.Argument(help="The design file (TOML).")],
+    *,
     shop: Annotated[Path | None, typer.Option(help="The shop file (TOML); absent = the built-in shop.")] = None,
     out: Annotated[Path | None, typer.Option(help="The output folder; absent = outputs/NAME.")] = None,
     only: Annotated[list[str] | None, typer.Option(help="Make only this part (may be repeated).")] = None,
+    jobs: Jobs = None,
     quiet: Quiet = False,
 ) -> None:
     """Make every file a design needs, measure each one, and judge audit and spec."""
+    from boomwright.crew import jobs_for_one
     from boomwright.pipeline import make as run
 
-    made = run(design, shop, out, only or (), _progress)
+    made = run(design, shop, out, only or (), progress=_progress, jobs=jobs or jobs_for_one())
     if not quiet:
         for size in made.plan.sizes:
             typer.echo(str(size))

@@ -8,6 +8,7 @@ from pathlib import Path
 
 from boomwright.audit import DESIGN_FILE, SHOP_FILE, Audit, audit_folder
 from boomwright.audit import FILE as AUDIT_FILE
+from boomwright.crew import crew
 from boomwright.design.tomlfile import load_design, write_design
 from boomwright.errors import CatalogueError, Fault, InputFault, PlanFault
 from boomwright.folder import check_replaceable, fresh_folder
@@ -23,6 +24,9 @@ from boomwright.shop.tomlfile import load_shop, write_shop
 OUTPUTS = Path("outputs")
 ALWAYS = "antenna"
 """The part that is always made: the others are checked against it."""
+
+PRELOAD = ("cadquery", "boomwright.audit")
+"""What every process that builds or measures needs."""
 
 SHOP_SECTIONS = ("printer", "laser", "saw", "accuracy", "cradle", "mould", "former", "stock")
 Progress = Callable[[str], None]
@@ -44,7 +48,9 @@ def make(
     shop_path: Path | None = None,
     out: Path | None = None,
     only: Sequence[str] = (),
+    *,
     progress: Progress = lambda step: None,
+    jobs: int = 1,
 ) -> Made:
     """Build, write and audit everything a design needs.
 
@@ -53,6 +59,7 @@ def make(
     out          the output folder, None = outputs/NAME
     only         part names to make, none = all
     progress     called with a word or two before each step
+    jobs         processes that build and measure; the files are the same whatever their number
 
     Raises InputFault for what the user gave, AccessError for what could not be read or written: nothing is changed.
     """
@@ -71,20 +78,27 @@ def make(
         raise _in_files(fault, design_path, shop_path) from None
     target = out if out is not None else OUTPUTS / design.name
     check_replaceable(target)
-    with fresh_folder(target) as folder:
+    with crew(jobs, PRELOAD) as executor, fresh_folder(target) as folder:
         entries = [FileEntry(DESIGN_FILE, "design", "", "toml", "mm", IDENTITY)]
         entries.append(FileEntry(SHOP_FILE, "shop", "", "toml", "mm", IDENTITY))
         (folder / DESIGN_FILE).write_text(write_design(design), "utf-8")
         (folder / SHOP_FILE).write_text(write_shop(shop), "utf-8")
+        built = []
         for part in parts:
             progress(f"building {part.name}")
-            entries += [entry for piece in part.build(plan) for entry in write_piece(part.name, piece, folder)]
+            built.append(executor.submit(build_part, part.name, plan, folder))
+        entries += [entry for files in built for entry in files.result()]
         manifest = write_manifest(folder, entries, [part.name for part in parts], left_out, plan.sizes)
         progress("measuring the files")
-        audit = audit_folder(folder)
+        audit = audit_folder(folder, executor)
         (folder / AUDIT_FILE).write_text(audit.as_json(), "utf-8")
         progress("")
     return Made(target, plan, manifest, audit, prediction)
+
+
+def build_part(name: str, plan: Plan, folder: Path) -> list[FileEntry]:
+    """Build a part of a plan and write its files into a folder; what the manifest says of them."""
+    return [entry for piece in PARTS[name].build(plan) for entry in write_piece(name, piece, folder)]
 
 
 def _chosen(only: Sequence[str]) -> list[Part]:

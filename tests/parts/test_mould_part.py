@@ -12,7 +12,7 @@ import numpy as np
 import pytest
 import samples
 
-from boomwright.audit import _Bench
+from boomwright.judging import Bench
 from boomwright.design.model import Design
 from boomwright.formats.brep import StepReading
 from boomwright.formats.meshes import CHORD_MM, ROUNDING_MM
@@ -53,7 +53,7 @@ def findings(name: str) -> tuple[dict[str, object], dict[str, StepReading]]:
     plan = planned(name)
     with TemporaryDirectory() as place:
         written(plan, Path(place))
-        found = {one.what: one for one in _Bench(Path(place)).judge(Mould().expect(plan))}
+        found = {one.what: one for one in Bench(Path(place)).judge(Mould().expect(plan))}
         files = {path.stem: STEP.read(path) for path in (Path(place) / "print").glob("*.step")}
     return found, files
 
@@ -130,7 +130,7 @@ def test_an_exact_printer_changes_nothing() -> None:
 
 
 def judged(plan: Plan, folder: Path) -> list[str]:
-    return [one.what for one in _Bench(folder).judge(Mould().expect(plan)) if not one.ok]
+    return [one.what for one in Bench(folder).judge(Mould().expect(plan)) if not one.ok]
 
 
 @pytest.mark.slow
