@@ -1,6 +1,7 @@
 """Who does the work: one process or several, with the same answers, and none left over."""
 
 import os
+import pickle
 import signal
 import subprocess
 import sys
@@ -12,6 +13,7 @@ from samples import GAUGE
 
 from boomwright.crew import Alone, crew
 from boomwright.design.tomlfile import write_design
+from boomwright.errors import Fault, PlanFault
 from boomwright.pipeline import make
 
 ORPHAN = """
@@ -39,6 +41,12 @@ def test_an_interrupt_passes_through_alone() -> None:
 
     with pytest.raises(KeyboardInterrupt):
         Alone().submit(interrupted)
+
+
+def test_faults_come_back_whole_from_another_process() -> None:
+    fault = PlanFault([Fault("boom.width_mm", "too thin", "take a thicker one", "beam.toml")])
+    again = pickle.loads(pickle.dumps(fault))
+    assert type(again) is PlanFault and again.faults == fault.faults and str(again) == str(fault)
 
 
 @pytest.mark.slow

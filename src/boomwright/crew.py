@@ -6,6 +6,7 @@ import multiprocessing
 import os
 import signal
 import threading
+import time
 from collections.abc import Callable, Iterator, Sequence
 from concurrent.futures import Executor, Future, ProcessPoolExecutor
 from contextlib import contextmanager
@@ -63,7 +64,8 @@ def crew(jobs: int, preload: Sequence[str] = ()) -> Iterator[Executor]:
     pool = ProcessPoolExecutor(jobs, context, initializer=_begin)
     try:
         for _ in range(jobs):
-            pool.submit(int)
+            # The pool begins a process for a task only while all it has are busy: each is kept so for a moment.
+            pool.submit(time.sleep, 0.2)
         signal.pthread_sigmask(signal.SIG_SETMASK, held)
         yield pool
     except BaseException:

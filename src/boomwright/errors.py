@@ -37,6 +37,10 @@ class InputFault(BoomwrightError, ValueError):
         self.faults = tuple(faults)
         super().__init__("\n".join(str(fault) for fault in self.faults))
 
+    def __reduce__(self) -> tuple[type[InputFault], tuple[tuple[Fault, ...]]]:
+        """Faults travel between processes whole."""
+        return type(self), (self.faults,)
+
     def in_file(self, file: str) -> InputFault:
         """The same faults, each naming `file` where it named none."""
         return type(self)(fault if fault.file else replace(fault, file=file) for fault in self.faults)
