@@ -137,6 +137,6 @@ def test_no_match_where_none_is_needed_or_none_can_be_cut():
     good = advise(task(48.0 + 3.0j))
     assert good.chosen is good.plain
     assert "none is needed" in good.why
-    crude = advise(task(105.0 - 17.6j, cut_m=40e-3))
+    crude = advise(task(105.0 - 17.6j, cut_m=20e-3))
     assert crude.chosen.match is None
     assert crude.why.startswith("no match can be cut")

@@ -23,7 +23,7 @@ from boomwright.rf.line import (
 NEAR_ENOUGH = 0.06
 """A quarter-wave section of a line at hand is tried when its impedance is within this share of the one asked for."""
 
-SHORTEST_CUTS = 5.0
+SHORTEST_CUTS = 16.0
 """A section shorter than so many cutting errors is not cut with any sense (common practice)."""
 
 WORTH_WHILE = 0.9

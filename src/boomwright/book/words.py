@@ -1,0 +1,52 @@
+"""Numbers and lists as the book writes them: one way everywhere, so that the same number reads the same."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+
+
+def figure(value: float, decimals: int = 2) -> str:
+    """A number with at most so many decimals, without zeros at its end."""
+    text = f"{value:.{decimals}f}"
+    text = text.rstrip("0").rstrip(".") if "." in text else text
+    return "0" if text in ("-0", "") else text
+
+
+def mm(value: float, decimals: int = 2) -> str:
+    """A length [mm] with its unit."""
+    return f"{figure(value, decimals)} mm"
+
+
+def mhz(value: float) -> str:
+    """A frequency [MHz] with its unit."""
+    return f"{value:.7g} MHz"
+
+
+def metres(value: float) -> str:
+    """A distance [m], rounded up in its second decimal: a distance to keep is never rounded down."""
+    return f"{figure(-(-value * 100.0 // 1) / 100.0)} m"
+
+
+def ohms(value: complex) -> str:
+    """An impedance [ohm]."""
+    sign = "+" if value.imag >= 0.0 else "-"
+    return f"{figure(value.real, 1)} {sign} j{figure(abs(value.imag), 1)} ohm"
+
+
+def listed(words: Iterable[str], last: str = "and") -> str:
+    """Words as a list in a sentence."""
+    found = list(words)
+    if len(found) < 2:
+        return "".join(found)
+    return f"{', '.join(found[:-1])} {last} {found[-1]}"
+
+
+def counted(count: int, one: str, many: str | None = None) -> str:
+    """A count with its noun."""
+    return f"{count} {one if count == 1 else many or one + 's'}"
+
+
+def span(values: Sequence[float], decimals: int = 2) -> str:
+    """From and to, once where they are alike."""
+    low, high = figure(min(values), decimals), figure(max(values), decimals)
+    return low if low == high else f"{low} to {high}"
