@@ -43,6 +43,14 @@ class Subject(StrEnum):
     schema = "schema"
 
 
+class Form(StrEnum):
+    """Forms of a driven element."""
+
+    straight = "straight"
+    folded = "folded"
+    loop = "loop"
+
+
 def _version(wanted: bool) -> None:
     if wanted:
         typer.echo(f"boomwright {__version__}")
@@ -123,6 +131,53 @@ def audit(
         typer.echo(result.as_json(), nl=False)
         raise typer.Exit(DONE if result.ok else NOT_MET)
     _judge(result, quiet)
+
+
+@app.command()
+def propose(
+    band: Annotated[str, typer.Option(metavar="LOW:HIGH", help="The band in MHz.")],
+    out: Annotated[Path, typer.Option(help="The design file to write.")],
+    *,
+    boom_mm: Annotated[float | None, typer.Option(help="Reflector to last director.")] = None,
+    rods: Annotated[
+        int | None, typer.Option(help="Reflector and directors together, instead of or beside a boom.")
+    ] = None,
+    rod_mm: Annotated[float | None, typer.Option(help="Rod diameter; absent = from the shelf or the band.")] = None,
+    reflector_mm: Annotated[
+        float | None, typer.Option(help="Reflector's diameter; absent = as the directors'.")
+    ] = None,
+    boom_width_mm: Annotated[float | None, typer.Option(help="Boom's diameter or side; absent = as it needs.")] = None,
+    driven: Annotated[Form | None, typer.Option(help="Driven element; absent = folded or straight as fits.")] = None,
+    ohm: Annotated[float, typer.Option(help="System impedance.")] = 50.0,
+    gain_min: Annotated[float | None, typer.Option(help="Least gain in dBi over the band.")] = None,
+    front_to_back_min: Annotated[float | None, typer.Option(help="Least front-to-back in dB over the band.")] = None,
+    vswr_max: Annotated[float, typer.Option(help="Greatest VSWR over the band.")] = 1.5,
+    seed: Annotated[int, typer.Option(help="Of the starts: the same seed gives the same design.")] = 0,
+    name: Annotated[str | None, typer.Option(help="The design's name; absent = from the band.")] = None,
+    shop: Annotated[Path | None, typer.Option(help="The shop file (TOML); absent = the built-in shop.")] = None,
+    quiet: Quiet = False,
+) -> None:
+    """Find a design for a band and write the design file."""
+    from boomwright.search.document import check_target, proposal_text, write_text
+    from boomwright.search.propose import propose as find
+    from boomwright.search.request import Request, band_of, form_of
+    from boomwright.shop.tomlfile import load_shop
+
+    check_target(out)
+    low_mhz, high_mhz = band_of(band)
+    form = form_of(driven)
+    wishes = (gain_min, front_to_back_min, vswr_max)
+    request = Request(
+        low_mhz, high_mhz, boom_mm, rods, rod_mm, reflector_mm, boom_width_mm, form, ohm, *wishes, seed, name
+    )
+    found = find(request, load_shop(shop), _progress)
+    write_text(out, proposal_text(found))
+    _progress("")
+    if not quiet:
+        typer.echo(found.summary)
+        typer.echo(f"written: {out}")
+    _tell_shortfalls(found.shortfalls)
+    raise typer.Exit(NOT_MET if found.shortfalls else DONE)
 
 
 @app.command()

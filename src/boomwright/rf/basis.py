@@ -162,6 +162,10 @@ class Planner:
         same = len(parts) == len(piece.parts) and all(len(a) == len(b) for a, b in zip(parts, piece.parts, strict=True))
         return self._piece_of(conductor, parts if same else piece.parts)
 
+    def alike(self, piece: Piece, conductor: Conductor) -> Piece:
+        """Another size of the piece's conductor with the same node fractions: matrices run smoothly with its sizes."""
+        return self._piece_of(conductor, piece.parts)
+
     def _piece_of(self, conductor: Conductor, parts: tuple[Floats, ...]) -> Piece:
         mesh, mode = build(conductor, parts), self.mode
         nearest_m = self.spacing_m[conductor.tag]

@@ -1,0 +1,1 @@
+"""Looking for better numbers with the solver: propose and rescale."""

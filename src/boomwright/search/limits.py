@@ -1,0 +1,91 @@
+"""How near conductors may stand: grooves that leave a web, a feed point that leaves room for its mould."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+
+from boomwright.design.model import Design
+from boomwright.errors import Fault, InputFault
+from boomwright.plan.plan import make_plan
+from boomwright.search.stock import Stock, least_web_gap_mm
+from boomwright.shop.profile import Shop
+
+LEAST_WL = 0.045
+"""Least distance of two neighbours [wavelengths]: nearer ones work against one another, and a hair moves the gain."""
+
+LEAST_DIAMETERS = 2.5
+"""Least distance of two axes in diameters of the thicker: nearer, current crowds more than the equations carry."""
+
+SEARCH_STEPS = 12
+FAR_WL = 0.45
+
+
+@dataclass(frozen=True)
+class Gaps:
+    """Least distances of neighbours' places [mm], and what sets each.
+
+    behind    reflector to driven element
+    ahead     driven element's fed conductor to first director
+    between   two directors
+    """
+
+    behind_mm: float
+    ahead_mm: float
+    between_mm: float
+    why: tuple[str, str, str]
+
+
+def least_gaps(stock: Stock, wavelength: float, trial: Callable[[float, float], Design], shop: Shop) -> Gaps:
+    """Least distances for this stock.
+
+    wavelength  at the band's centre [mm]
+    trial       a design with the driven element at these distances from reflector and first director [mm]
+    """
+    glue, wire, floor = stock.seat.glue_gap_mm, stock.driven.outer_diameter_mm, LEAST_WL * wavelength
+    thick = max(stock.reflector_mm, stock.director_mm, wire)
+    floor = max(floor, LEAST_DIAMETERS * thick)
+    if stock.driven.form == "loop":
+        wire = 0.0
+    spacing = stock.spacing_mm
+    behind = max(floor, least_web_gap_mm(stock.reflector_mm, wire, glue))
+    ahead = max(floor, least_web_gap_mm(wire, stock.director_mm, glue))
+    between = max(floor, least_web_gap_mm(stock.director_mm, stock.director_mm, glue))
+    far = FAR_WL * wavelength
+    usual = _mould_faults(trial(far, spacing + far), shop)
+
+    def least(build: Callable[[float], Design], low_mm: float) -> tuple[float, str]:
+        def hinders(gap_mm: float) -> bool:
+            return not _mould_faults(build(gap_mm), shop) <= usual
+
+        if not hinders(low_mm):
+            return low_mm, "the grooves' web" if low_mm > floor else "electrical"
+        high_mm = far
+        for _ in range(SEARCH_STEPS):
+            middle = (low_mm + high_mm) / 2.0
+            low_mm, high_mm = (middle, high_mm) if hinders(middle) else (low_mm, middle)
+        return high_mm, "room for the feed-point mould"
+
+    back, back_why = least(lambda gap: trial(gap, spacing + far), behind)
+    front, front_why = least(lambda gap: trial(far, spacing + gap), ahead)
+    step = stock.step_mm
+    rounded = [math.ceil(value / step - 1e-6) * step for value in (back, spacing + front, between)]
+    why = "the grooves' web" if between > floor else "electrical"
+    return Gaps(rounded[0], rounded[1], rounded[2], (back_why, front_why, why))
+
+
+def _mould_faults(design: Design, shop: Shop) -> frozenset[str]:
+    """Key paths that the mould's plan complains of; a boom that holds no groove complains of itself."""
+    try:
+        return frozenset(fault.path for fault in make_plan(design, shop).faults["mould"])
+    except InputFault as fault:
+        return frozenset(f"seat: {each.path}" for each in fault.faults)
+
+
+def build_faults(design: Design, shop: Shop) -> tuple[Fault, ...]:
+    """Why this shop cannot make parts of a design; empty when it can."""
+    try:
+        return tuple(fault for faults in make_plan(design, shop).faults.values() for fault in faults)
+    except InputFault as fault:
+        return tuple(replace(each) for each in fault.faults)
