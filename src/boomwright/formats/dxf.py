@@ -11,22 +11,20 @@ from pathlib import Path
 from typing import Any
 
 from boomwright.errors import CatalogueError, MeasureError
-from boomwright.formats import outlines, slots
+from boomwright.formats import assembly, outlines, plates, slots
 from boomwright.formats.format import FileEntry, Format
 from boomwright.formats.outlines import DxfReading, Outline
 from boomwright.pieces import DrawingPiece, Expectation, Piece, Probe
+from boomwright.shop.nesting import sheet_margin_mm
 from boomwright.shop.profile import Shop
 
 MILLIMETRES = 4
 """The DXF header's number for the unit ($INSUNITS)."""
 
-PART_GAP_MM = 1.0
-"""Least room between two parts on a sheet, besides two kerfs (product rule)."""
-
 LAYER_COLOURS = (1, 5, 3, 6, 4, 2, 7)
 """Colour numbers, given to the layers in the order of their names."""
 
-MEASURES = {**outlines.MEASURES, "slot": slots.measure_slot}
+MEASURES = {**outlines.MEASURES, "slot": slots.measure_slot, **plates.MEASURES, **assembly.MEASURES}
 
 
 class Dxf(Format):
@@ -82,7 +80,7 @@ class Dxf(Format):
         if entry.process == "laser":
             laser = shop.laser
             layers = [laser.layers.cut, laser.layers.score, laser.layers.engrave]
-            room = 2.0 * laser.kerf_mm + PART_GAP_MM
+            room = sheet_margin_mm(laser)
             rules += [
                 none("open contours on the cutting layer", "", "open_contours", {"layer": laser.layers.cut}),
                 none("layers the shop does not know", "", "unknown_layers", {"layers": layers}),

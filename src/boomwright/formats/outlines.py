@@ -134,6 +134,16 @@ class DxfReading:
         """Closed outlines that lie in no other, by layer; filled as asked for."""
         return {}
 
+    @cached_property
+    def plates(self) -> dict[Any, Any]:
+        """Plates with the kerf undone, by place; filled as asked for."""
+        return {}
+
+    @cached_property
+    def standing(self) -> dict[Any, Any]:
+        """Plates in their places in a fixture; filled as asked for."""
+        return {}
+
     def parts(self, layer: str | None) -> list[Outline]:
         """The outer contours: closed outlines that lie in no other one of the layer."""
         if layer not in self.parts_by_layer:

@@ -20,6 +20,7 @@ _OWN = (
     "boomwright.parts.stock_plan:StockPlanPart",
     "boomwright.parts.wrap:WrapTemplate",
     "boomwright.parts.cradle:CradlePart",
+    "boomwright.parts.sheet_cradle:SheetCradlePart",
     "boomwright.parts.mould:Mould",
     "boomwright.parts.comb:SpacingComb",
     "boomwright.parts.former:FormerPart",

@@ -15,6 +15,7 @@ from boomwright.plan.gauge import plan_gauge
 from boomwright.plan.guide import plan_guide
 from boomwright.plan.mould import MouldPlan, plan_mould
 from boomwright.plan.seat import SeatPlan, plan_seat
+from boomwright.plan.sheet_cradle import SheetCradlePlan, plan_sheet_cradle
 from boomwright.plan.size import Size
 from boomwright.plan.stock import plan_stock
 from boomwright.plan.wrap import plan_wrap
@@ -35,6 +36,7 @@ class Plan:
     seat: SeatPlan
     comb: CombPlan
     mould: MouldPlan
+    sheet_cradle: SheetCradlePlan
     sizes: tuple[Size, ...]
     laid: CradlePlan | None = None
     faults: dict[str, tuple[Fault, ...]] = field(default_factory=dict)
@@ -65,6 +67,8 @@ def make_plan(design: Design, shop: Shop) -> Plan:
         laid, cradle_sizes, cradle_faults = plan_cradle(design, boom, shop, seat)
         sizes = sizes + cradle_sizes
         by_part["cradle"] = tuple(cradle_faults)
+    sheet, sheet_sizes, sheet_faults = plan_sheet_cradle(design, boom, shop, seat)
+    by_part["sheet-cradle"] = tuple(sheet_faults)
     _, stock_sizes, by_part["stock-plan"] = plan_stock(design, shop)
     _, wrap_sizes = plan_wrap(design, boom, wished)
     _, gauge_sizes = plan_gauge(design, shop)
@@ -75,6 +79,7 @@ def make_plan(design: Design, shop: Shop) -> Plan:
         *sizes,
         *mould_sizes,
         *comb_sizes,
+        *sheet_sizes,
         *stock_sizes,
         *wrap_sizes,
         *gauge_sizes,
@@ -82,4 +87,4 @@ def make_plan(design: Design, shop: Shop) -> Plan:
         *guide_sizes,
         *block_sizes,
     ]
-    return Plan(design, shop, boom, wished, seat, comb, mould, tuple(sizes), laid, by_part)
+    return Plan(design, shop, boom, wished, seat, comb, mould, sheet, tuple(sizes), laid, by_part)
