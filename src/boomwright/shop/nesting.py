@@ -76,7 +76,7 @@ def _up(length_mm: float) -> int:
 
 
 def _sheets(packed: Sequence[Any]) -> int:
-    return 1 + max(row[0] for row in packed)
+    return 1 + max(int(row[0]) for row in packed)
 
 
 def _algorithms() -> tuple[Any, ...]:
