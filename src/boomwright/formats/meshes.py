@@ -11,7 +11,7 @@ from typing import Any
 import numpy as np
 
 from boomwright.errors import CatalogueError, MeasureError
-from boomwright.formats import deviation, gaps, notches
+from boomwright.formats import deviation, feet, gaps, notches, overhang, walls
 from boomwright.formats.bodies import extent_of, overrun_of
 from boomwright.formats.brep import Vector
 from boomwright.formats.format import FileEntry
@@ -46,6 +46,12 @@ class MeshReading:
         length = np.linalg.norm(across, axis=1, keepdims=True)
         normals: Vector = np.divide(across, length, out=np.zeros_like(across), where=length > 0.0)
         return normals
+
+    @cached_property
+    def heights(self) -> Vector:
+        """Distinct heights of corners above the bed, ascending [mm]."""
+        heights: Vector = np.unique(self.vertices[:, 2])
+        return heights
 
     @cached_property
     def slopes(self) -> list[notches.Slope]:
@@ -168,6 +174,10 @@ MEASURES: dict[str, Callable[[Any, Mapping[str, Any], Sequence[Any]], float]] = 
     "unit_mm": measure_unit,
     "same_as_mm": measure_same_as,
     "free_mm": gaps.measure_free_in_mesh,
+    "unsupported_mm2": overhang.measure_unsupported,
+    "midair_starts": overhang.measure_midair_starts,
+    "thinnest_wall_mm": walls.measure_thinnest_wall,
+    "foot_chamfer_mm": feet.measure_foot_chamfer,
 }
 
 

@@ -15,6 +15,13 @@ from boomwright.pieces import Expectation, Piece, Probe, SolidPiece
 from boomwright.shop.profile import Shop
 
 HEADER_BYTES = 80
+WALL_NOZZLES = 3.0
+"""Least wall in widths of the nozzle (product rule)."""
+
+WALL_ALLOWED_MM = 0.04
+"""Two chords of the mesh, and the step in which a thickness is found."""
+
+HANGING_ALLOWED_MM2 = 0.05
 RECORD = np.dtype([("normal", "<f4", 3), ("corners", "<f4", (3, 3)), ("attribute", "<u2")])
 
 
@@ -62,8 +69,25 @@ class Stl(Format):
         return meshes.measure(reading, probe, also)
 
     def expect(self, entry: FileEntry, shop: Shop) -> tuple[Expectation, ...]:
-        """A sound mesh, true to the STEP file beside it."""
-        return (*meshes.expect_sound(entry), *meshes.expect_true_to_step(entry, shop))
+        """A sound mesh, true to the STEP file beside it, that this printer can lay down."""
+        true = meshes.expect_true_to_step(entry, shop)
+        return (*meshes.expect_sound(entry), *true, *expect_printable(entry, shop))
+
+
+def expect_printable(entry: FileEntry, shop: Shop) -> list[Expectation]:
+    """Nothing that hangs in the air, and no wall thinner than three widths of the nozzle as it comes out."""
+    path, nozzle = entry.path, shop.printer.nozzle_mm
+    wall = WALL_NOZZLES * nozzle
+    growth = shop.printer.outline_growth_mm if entry.offsets.get("outline_growth_mm") else 0.0
+    # Bores are drawn wider by what they shrink, so the walls between them are drawn thinner and print as planned.
+    shrink = max(0.0, shop.printer.hole_shrink_mm) if entry.offsets.get("hole_shrink_mm") else 0.0
+    thin = Probe("thinnest_wall_mm", {"up_to_mm": wall, "growth_mm": growth})
+    hanging = Probe("unsupported_mm2", {"ledge_mm": nozzle})
+    return [
+        Expectation(path, "ceilings that need support", 0.0, HANGING_ALLOWED_MM2, "mm2", hanging, "at_most"),
+        Expectation(path, "places that begin in the air", 0.0, 0.0, "", Probe("midair_starts"), "at_most"),
+        Expectation(path, "thinnest wall", wall, WALL_ALLOWED_MM + shrink, "mm", thin, "at_least"),
+    ]
 
 
 def _normals(corners: Any) -> Any:

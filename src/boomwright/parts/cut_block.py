@@ -5,6 +5,7 @@ from __future__ import annotations
 from functools import partial
 from typing import TYPE_CHECKING
 
+from boomwright.parts.feet import expect_foot
 from boomwright.parts.printed import chamfered_plate, expect_extent, label_tools, printed_piece
 from boomwright.parts.solids import Shape, box, cut, cylinder, prism_along_x
 from boomwright.pieces import Expectation, Part, Piece, Probe
@@ -47,7 +48,7 @@ class CutBlockPart(Part):
             for suffix, growth in (("step", 0.0), ("stl", plan.shop.printer.outline_growth_mm)):
                 found += _expect(blocks, block, f"{stem}.{suffix}", growth)
             size = (block.x_mm[1] - block.x_mm[0], 2.0 * blocks.outer_half_mm, blocks.top_mm)
-            found += expect_extent(f"{stem}.step", size)
+            found += [*expect_extent(f"{stem}.step", size), expect_foot(f"{self.name}-{number}")]
         return tuple(found)
 
 

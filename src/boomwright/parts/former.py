@@ -5,6 +5,7 @@ from __future__ import annotations
 from functools import partial
 from typing import TYPE_CHECKING
 
+from boomwright.parts.feet import expect_foot
 from boomwright.parts.printed import chamfered_plate, expect_extent, label_tools, printed_piece
 from boomwright.parts.solids import Shape, box, cut, cylinder, unite
 from boomwright.pieces import Expectation, Part, Piece, Probe
@@ -57,7 +58,7 @@ class FormerPart(Part):
             file = f"print/{self.name}.{suffix}"
             found += _expect_bent(former, file, growth) if former.bends else _expect_jig(former, file, growth)
         sides = [high - low for low, high in (former.x_mm, former.y_mm)]
-        return (*found, *expect_extent(f"print/{self.name}.step", sides))
+        return (*found, *expect_extent(f"print/{self.name}.step", sides), expect_foot(self.name))
 
 
 def _height(former: FormerPlan) -> float:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from functools import partial
 from typing import TYPE_CHECKING
 
+from boomwright.parts.feet import expect_foot
 from boomwright.parts.printed import chamfered_plate, expect_extent, label_tools, printed_piece
 from boomwright.parts.solids import Shape, box, cut, cylinder
 from boomwright.pieces import Expectation, Part, Piece, Probe
@@ -57,7 +58,7 @@ class LengthGauge(Part):
                         probe = Probe("free_mm", {"at": at, "along": along})
                         words = f"{slot.tags} {word} slot {what}"
                         found.append(Expectation(f"{stem}.{suffix}", words, size + moved, SLOT_ALLOWED_MM, "mm", probe))
-            found += expect_extent(f"{stem}.step", plate.size_mm)
+            found += [*expect_extent(f"{stem}.step", plate.size_mm), expect_foot(f"{self.name}-{number}")]
         return tuple(found)
 
 

@@ -6,6 +6,7 @@ import math
 from functools import partial
 from typing import TYPE_CHECKING
 
+from boomwright.parts.feet import CHAMFER_MM, expect_foot
 from boomwright.parts.printed import chamfered_plate, expect_extent, label_tools, printed_piece
 from boomwright.parts.solids import Shape, box, cut, cylinder, prism_along_y, unite
 from boomwright.pieces import Expectation, Part, Piece, Probe
@@ -47,7 +48,7 @@ class GrooveGuide(Part):
             for suffix, drawn in (("step", Offsets()), ("stl", offsets)):
                 found += _expect(guide, section, f"{stem}.{suffix}", drawn)
             size = (section.end_mm - section.start_mm, 2.0 * guide.outer_half_mm, guide.top_mm)
-            found += expect_extent(f"{stem}.step", size)
+            found += [*expect_extent(f"{stem}.step", size), expect_foot(f"{self.name}-{number}")]
         return tuple(found)
 
 
@@ -109,15 +110,24 @@ def _shape(guide: GuidePlan, section: GuideSection, offsets: Offsets) -> Shape:
 
 
 def _tool(guide: GuidePlan, one: GuideCut, x_mm: float, offsets: Offsets) -> Shape:
-    """A slot through roof and cheeks that ends in a point of 90 degrees (printed without support), or a bore."""
+    """A slot through roof and cheeks that ends in a point of 90 degrees (printed without support), or a bore.
+
+    Both are wider at the bed, where the first layers squeeze inward and the tool goes in.
+    """
+    import cadquery as cq
+
     if one.depth_mm == 0.0:
         radius = (one.width_mm + offsets.hole_shrink_mm) / 2.0
-        return cylinder((x_mm, 0.0, -1.0), (0, 0, 1), radius, guide.roof_mm + 2.0)
+        bore = cylinder((x_mm, 0.0, -1.0), (0, 0, 1), radius, guide.roof_mm + 2.0)
+        mouth = cq.Solid.makeCone(radius + 2.0 * CHAMFER_MM, radius, 2.0 * CHAMFER_MM, cq.Vector(x_mm, 0.0, -CHAMFER_MM))
+        return unite(bore, [mouth])
     half, reach = one.width_mm / 2.0 + offsets.outline_growth_mm, guide.outer_half_mm + 1.0
     point = guide.roof_mm + _point_mm(one) + offsets.outline_growth_mm
     outline = [
-        (x_mm - half, -1.0),
-        (x_mm + half, -1.0),
+        (x_mm - half, CHAMFER_MM),
+        (x_mm - half - 2.0 * CHAMFER_MM, -CHAMFER_MM),
+        (x_mm + half + 2.0 * CHAMFER_MM, -CHAMFER_MM),
+        (x_mm + half, CHAMFER_MM),
         (x_mm + half, point - half),
         (x_mm, point),
         (x_mm - half, point - half),

@@ -10,6 +10,7 @@ import math
 from typing import TYPE_CHECKING, Any
 
 from boomwright.design.centreline import straight_half_mm
+from boomwright.parts.feet import expect_foot
 from boomwright.parts.mould_halves import clip_shape, half_shape
 from boomwright.parts.palette import PRINTED
 from boomwright.pieces import Body, Expectation, Matrix, Part, Piece, Probe, SolidPiece
@@ -55,6 +56,7 @@ class Mould(Part):
         """Draft, release, no overlap, resin, a cavity in one, pins that fit, and the sizes of the block."""
         mould = plan.mould
         found = [e for half in HALVES for e in _expect_half(plan, half)]
+        found += [expect_foot(f"mould-{half}") for half in HALVES]
         found += _expect_closed(plan)
         if mould.clip is not None:
             found += _expect_clip(plan)
@@ -143,6 +145,7 @@ def _expect_clip(plan: Plan) -> list[Expectation]:
     also = (ANTENNA, _file("upper"), _file("lower"))
     off = ((0.0, 0.0, mould.clip.top_mm - mould.clip.foot_mm),)
     return [
+        expect_foot("mould-clip"),
         _nothing(CLIP_FILE, "mould-clip overlap with antenna and mould", Probe("interference_mm3", frames, also)),
         _nothing(
             CLIP_FILE,

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from boomwright.parts.solids import (
@@ -36,6 +37,8 @@ def half_shape(mould: MouldPlan, half: Half, offsets: Offsets = NOMINAL) -> Shap
     growth, widening = offsets.outline_growth_mm, offsets.hole_shrink_mm / 2.0
     blank = _blank_along_z(mould, half, growth) if mould.pull == "z" else _blank_along_x(mould, half, growth)
     tools = [cavity_shape(mould, growth), boom_channel(mould.boom, mould.clearance_mm, widening, mould.pull)]
+    if mould.pull == "x":
+        tools += _lead_in(mould, mould.bed_mm(half), widening)
     tools += [conductor(runs, mould.conductor_channel_mm + widening) for runs in mould.conductors]
     if mould.coax is not None:
         start, end = mould.coax.start, mould.coax.end
@@ -100,6 +103,22 @@ def cavity_shape(mould: MouldPlan, growth_mm: float = 0.0) -> Shape:
     in_xz = [(x, z) for z, x in across]
     in_xy = shapely.Polygon([(x, y) for y, x in along])
     return prism_along_y(in_xz, (y0, y1)).intersect(prism_along_z(in_xy, (z0, z1)))
+
+
+def _lead_in(mould: MouldPlan, bed_mm: float, widening_mm: float) -> list[Shape]:
+    """The boom's channel wider where it meets the bed, as the outer edges are broken there; none if it ends before."""
+    import cadquery as cq
+
+    channel = mould.boom
+    if not channel.x_mm[0] < bed_mm < channel.x_mm[1]:
+        return []
+    inward = -1.0 if bed_mm > mould.at_mm else 1.0
+    wires = []
+    for into, wider in ((-CHAMFER_MM, 2.0 * CHAMFER_MM), (CHAMFER_MM, 0.0)):
+        x = bed_mm + inward * into
+        slab = boom_channel(replace(channel, x_mm=(x, x + 1.0)), mould.clearance_mm + wider, widening_mm, "x")
+        wires.append(slab.faces("<X").outerWire())
+    return [cq.Solid.makeLoft(wires, True)]
 
 
 def boom_channel(channel: BoomChannel, clearance_mm: float, widening_mm: float, printed_along: Pull) -> Shape:

@@ -11,7 +11,7 @@ import shapely
 from shapely.geometry.base import BaseGeometry
 
 from boomwright.data.tables import cables
-from boomwright.design.centreline import Point, Run, loop_drop_mm, trace
+from boomwright.design.centreline import Point, Run, bend_radius_mm, loop_drop_mm, straight_half_mm, trace
 from boomwright.design.model import Boom, Design, Driven
 from boomwright.errors import Fault
 from boomwright.plan.cavity import (
@@ -46,6 +46,9 @@ COAX_SHORT_OF_CONDUCTOR_MM = 0.5
 COAX_STUB_MM = 10.0
 SKIN_MM = 1.2
 """A wall thinner than this behind a blind channel is left out: the channel goes through."""
+
+THIN_TAB_MM = 2.0
+"""What the wall leaves inside a bend must stand out by this from the cavity: a round tab of less breaks off."""
 
 NECK_MM, LEAST_NECK_MM = 2.0, 0.8
 """Radius of the funnel where it meets the cavity, and the least for it in a narrow cavity."""
@@ -133,7 +136,7 @@ def _inner_half_mm(ground: Ground, pull: Pull, depth_mm: float) -> float:
         widths.append(ground.coax_y_mm + rc + wall + lean)
     elif rc:  # between funnel and vent on the far side
         widths.append(rc + clearance + ground.web_mm + 2.0 * NECK_MM + TIP_PLAY_MM + lean)
-    return _past_a_near_tip_mm(ground.driven, max(widths))
+    return _past_a_near_bend_mm(ground, pull, lean, _past_a_near_tip_mm(ground.driven, max(widths)))
 
 
 def _past_a_near_tip_mm(driven: Driven, half_mm: float) -> float:
@@ -142,6 +145,17 @@ def _past_a_near_tip_mm(driven: Driven, half_mm: float) -> float:
         return half_mm
     tip = driven.length_mm / 2.0
     return tip + TIP_RESIN_MM if half_mm - TIP_RESIN_MM < tip < half_mm + SKIN_MM else half_mm
+
+
+def _past_a_near_bend_mm(ground: Ground, pull: Pull, lean_mm: float, half_mm: float) -> float:
+    """The half width, or more where the wall would leave but a thin tab of itself inside a bend: then none."""
+    driven, tube = ground.driven, ground.radius_mm + ground.shop.mould.channel_clearance_mm
+    if driven.form != "folded" or (pull == "x" and not ground.room.encloses_second):
+        return half_mm
+    lean = ground.slope * tube if pull == "z" else lean_mm
+    # A round channel narrows with its depth, so a tab reaches up to the wire's axis there.
+    inside = straight_half_mm(driven) + bend_radius_mm(driven) + lean
+    return inside if 0.0 < inside - half_mm < THIN_TAB_MM else half_mm
 
 
 def _cavity_along_z(ground: Ground, ends: Ends) -> Cavity:

@@ -100,3 +100,7 @@ class MouldPlan:
         """Extent of a half along the pull [mm]."""
         low, high = self.block[0 if self.pull == "x" else 2]
         return (min(self.parting_mm), high) if half == "upper" else (low, max(self.parting_mm))
+
+    def bed_mm(self, half: Half) -> float:
+        """Where along the pull the face of a half lies that is printed on the bed [mm]."""
+        return self.half_span_mm(half)[1 if half == "upper" else 0]

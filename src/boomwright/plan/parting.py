@@ -20,9 +20,6 @@ LEAST_FLANGE_MM, MOST_FLANGE_MM = 8, 30
 TIE_WIDTH_MM, TIE_DEPTHS_MM = 4.2, (1.6, 1.0)
 PRY_MM = (3.0, 2.5)
 PRY_DEPTH_MM = 1.2
-THIN_WALL_MM = 0.8
-"""Least material between a pry or tie notch and a channel: two passes of an ordinary nozzle."""
-
 SOCKET_SPARE_MM = 0.5
 """How much deeper a socket is than its pin is high."""
 
@@ -70,7 +67,7 @@ class PartingFace:
 
 @dataclass(frozen=True)
 class PinRoom:
-    """What a pin needs: play in its socket a side, walls round the socket, and material below it [mm]."""
+    """What pins and notches need: play in a socket a side, walls round sockets and notches, depth for a socket [mm]."""
 
     play_mm: float
     wall_mm: float
@@ -92,8 +89,9 @@ def lay_out_parting(u_mm: Span, inner_mm: float, body_mm: float, channels: BaseG
     best: PartingFace | None = None
     for flange_mm in range(LEAST_FLANGE_MM, MOST_FLANGE_MM + 1):
         outer = body_mm + flange_mm
-        pries = _pry_notch(u_mm, outer, both)
-        ties = _tie_notches(u_mm, (body_mm, outer), both)
+        pries = _pry_notch(u_mm, outer, both.buffer(room.wall_mm))
+        solid = shapely.union_all([both, *(notch.polygon for notch in pries)])
+        ties = _tie_notches(u_mm, (body_mm + room.wall_mm, outer - room.wall_mm), solid.buffer(room.wall_mm))
         taken = shapely.union_all([both, *(n.polygon for n in (*ties, *pries))])
         free = shapely.box(u_mm[0], inner_mm, u_mm[1], outer).difference(taken)
         pins = _pins(free, room)
@@ -141,22 +139,19 @@ def _apart(one: tuple[float, float], other: tuple[float, float]) -> float:
     return float(((one[0] - other[0]) ** 2 + (one[1] - other[1]) ** 2) ** 0.5)
 
 
-def _tie_notches(u_mm: Span, y_mm: Span, channels: BaseGeometry) -> tuple[Notch, ...]:
-    """A notch in both edges of the flange, as near the body as the channels let it; none where there is no room."""
-    walled = channels.buffer(THIN_WALL_MM)
-    start = y_mm[0] + THIN_WALL_MM
+def _tie_notches(u_mm: Span, y_mm: Span, walled: BaseGeometry) -> tuple[Notch, ...]:
+    """A notch in both edges of the flange, as near the body as what is `walled` lets it; none where there is no room."""
     for depth in TIE_DEPTHS_MM:
-        for step in range(int(y_mm[1] - THIN_WALL_MM - TIE_WIDTH_MM - start) + 1):
-            y = (start + step, start + step + TIE_WIDTH_MM)
+        for step in range(int(y_mm[1] - TIE_WIDTH_MM - y_mm[0]) + 1):
+            y = (y_mm[0] + step, y_mm[0] + step + TIE_WIDTH_MM)
             pair = (Notch((u_mm[0], u_mm[0] + depth), y), Notch((u_mm[1] - depth, u_mm[1]), y))
-            if not any(notch.polygon.intersects(walled) for notch in pair):
+            if y[1] <= y_mm[1] and not any(notch.polygon.intersects(walled) for notch in pair):
                 return pair
     return ()
 
 
-def _pry_notch(u_mm: Span, outer_mm: float, channels: BaseGeometry) -> tuple[Notch, ...]:
-    """A corner of the flange, where a blade goes in; none where the channels take both corners."""
-    walled = channels.buffer(THIN_WALL_MM)
+def _pry_notch(u_mm: Span, outer_mm: float, walled: BaseGeometry) -> tuple[Notch, ...]:
+    """A corner of the flange, where a blade goes in; none where what is `walled` takes both corners."""
     y = (outer_mm - PRY_MM[1], outer_mm)
     for u in ((u_mm[1] - PRY_MM[0], u_mm[1]), (u_mm[0], u_mm[0] + PRY_MM[0])):
         if not Notch(u, y).polygon.intersects(walled):
