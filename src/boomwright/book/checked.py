@@ -28,9 +28,11 @@ def chapter(run: Run) -> Chapter:
 def _audit_blocks(audit: Audit) -> list[Block]:
     count, failed = len(audit.findings), audit.failures
     if audit.ok:
-        verdict = f"{counted(count, 'quantity', 'quantities')} were measured on the written files; all are as planned."
+        verdict = f"Measured on the written files: {counted(count, 'quantity', 'quantities')}. All are as planned."
     else:
-        verdict = f"{counted(count, 'quantity', 'quantities')} were measured, and {len(failed)} are not as planned."
+        verdict = (
+            f"Measured on the written files: {counted(count, 'quantity', 'quantities')}. Not as planned: {len(failed)}."
+        )
         verdict += " Do not build from the files named below before that is mended."
     per_file = Counter(finding.file for finding in audit.findings)
     bad = Counter(finding.file for finding in failed)

@@ -69,7 +69,7 @@ def _jig_steps(run: Run) -> list[Step]:
             f"{mm(driven.gap_mm)}.",
             f"Both halves measure {mm(half)}, and a gauge block or drill shank of {mm(driven.gap_mm)} fills the slot.",
         ),
-        Step("Break all edges lightly.", "Both halves slide into their seat by hand."),
+        Step("Break all edges lightly.", "A fingertip along the edge feels nothing."),
     ]
 
 
@@ -102,20 +102,7 @@ def _bend_steps(run: Run) -> list[Step]:
             "The first mark's edge nearer the stop lies on the engraved line.",
         )
     )
-    how = (
-        "Bend on the one post, moving the wire on to its next mark each time"
-        if plan.is_corner
-        else "Bend round each post"
-    )
-    steps.append(
-        Step(
-            f"{how}: {counted(len(plan.bends), 'bend')}, in order, each pulled to {turns} degrees; the wire "
-            "springs back by "
-            f"about {figure(run.shop.former.springback_percent)} percent.",
-            "Let go, the straight parts lie parallel or square as drawn. If not, change the shop's spring-back "
-            "and print anew.",
-        )
-    )
+    steps.append(_pull_step(run, turns, plan.is_corner))
     steps.append(
         Step(
             f"Set the gap with the former's feeler of {mm(driven.gap_mm)}.",
@@ -124,6 +111,18 @@ def _bend_steps(run: Run) -> list[Step]:
     )
     steps.append(Step("Lay the element on a flat plate.", f"It does not rock, and measures {_outer(run)}."))
     return steps
+
+
+def _pull_step(run: Run, turns: str, is_corner: bool) -> Step:
+    plan, _ = plan_former(run.design, run.shop)
+    spring = f"the wire springs back by about {figure(run.shop.former.springback_percent)} percent"
+    again = "If not, change the shop's spring-back and print anew."
+    if run.design.driven.shape == "circle":
+        words = f"Wind the wire once round the disc, pulled tight to {turns} degrees; {spring}."
+        return Step(words, f"Let go, the ends face each other across about the gap. {again}")
+    how = "Bend on the one post, moving the wire on to its next mark" if is_corner else "Bend round each post in order"
+    words = f"{how}: {counted(len(plan.bends), 'bend')}, each pulled to {turns} degrees; {spring}."
+    return Step(words, f"Let go, the straight parts lie parallel or square as drawn. {again}")
 
 
 def _outer(run: Run) -> str:
@@ -165,14 +164,12 @@ def _fit_steps(run: Run) -> list[Step]:
             )
         ]
     if driven.form == "loop":
-        clip = (
-            "Set the clip over the loop's upper side on the boom"
-            if run.plan.mould.clip is not None
-            else "Hold the loop"
-        )
+        clip = "Set the clip over its upper side on the boom" if run.plan.mould.clip is not None else "Hold it upright"
         return [
             Step(
-                f"Slide the loop over the boom to {mm(driven.at_mm)} from the datum, its gap lowest. {clip}.",
+                "Twist the ends at the gap apart sideways, as one opens a ring, pass the loop over the boom from above "
+                f"at {mm(driven.at_mm)} from the datum, its gap lowest, and twist it shut "
+                f"to {mm(driven.gap_mm)}. {clip}.",
                 "It stands square to the boom from the side and from above, and the boom passes through its middle.",
                 Picture.CRADLE_DRIVEN,
             )

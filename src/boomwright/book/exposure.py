@@ -74,7 +74,7 @@ def _distance_table(transmitter: Transmitter, source: Source) -> Table:
         f"{figure(transmitter.power_w, 4)} W, {figure(100.0 * transmitter.duty)} percent on the air, "
         f"EIRP {figure(source.eirp_w, 3)} W."
     )
-    head = ("Guideline", "For", "Limit [W/m2]", "Averaged over", "Free field", "With the ground", "Keep")
+    head = ("Guideline", "For", "Limit [W/m²]", "Averaged over", "Free field", "With the ground", "Keep")
     return Table(head, rows, caption)
 
 

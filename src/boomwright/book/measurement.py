@@ -24,6 +24,10 @@ DEVIATIONS = 2.0
 DEEPEST_DB = 40.0
 """An analyser of this price tells no more: deeper is written as this (common practice)."""
 
+NARROW = 0.01
+"""Over a band narrower than this share of its centre the spread is taken as at the centre: it changes by less than the
+shop's accuracies are known."""
+
 ROUND = np.linspace(0.0, 2.0 * math.pi, 181)
 
 
@@ -73,7 +77,7 @@ def readings(run: Run) -> tuple[Reading, ...]:
 def effects(run: Run) -> tuple[Effect, ...]:
     """What a millimetre of each length, place and diameter does, the most harmful at this shop's accuracy first."""
     ohm, z = run.design.feed.system_ohm, run.feed_ohm / run.divides
-    middle = _sensitivities(run.design)[1]
+    middle = _middle(run.design)
     accuracy = _accuracy_m(run.shop.accuracy)
     gamma = reflection(z, ohm)
     found = []
@@ -92,7 +96,7 @@ def effects(run: Run) -> tuple[Effect, ...]:
 def gain_spread_db(run: Run) -> float:
     """One standard deviation of the gain at the band's centre [dB], first order."""
     accuracy = _accuracy_m(run.shop.accuracy)
-    return math.sqrt(sum((e.gain_db_m * accuracy[e.dimension]) ** 2 for e in _sensitivities(run.design)[1]))
+    return math.sqrt(sum((e.gain_db_m * accuracy[e.dimension]) ** 2 for e in _middle(run.design)))
 
 
 def driven_mm_per_mhz(run: Run) -> float | None:
@@ -100,7 +104,7 @@ def driven_mm_per_mhz(run: Run) -> float | None:
 
     Positive: longer reads lower. None where length hardly moves the reactance, or moves it the wrong way round.
     """
-    length = next(e for e in _sensitivities(run.design)[1] if (e.tag, e.dimension) == (FED_TAG, "length_m"))
+    length = next(e for e in _middle(run.design) if (e.tag, e.dimension) == (FED_TAG, "length_m"))
     sweep, i = run.prediction.sweep, run.prediction.middle
     reach = slice(max(i - 1, 0), i + 2)
     slope_ohm_mhz = float(np.polyfit(run.prediction.frequency_mhz[reach], sweep.impedance_ohm.imag[reach], 1)[0])
@@ -111,7 +115,7 @@ def driven_mm_per_mhz(run: Run) -> float | None:
 
 
 def _spreads(design: Design, accuracy: Accuracy) -> tuple[list[float], Floats]:
-    """Frequencies [MHz] and the covariance of resistance and reactance there [ohm²], (3, 2, 2)."""
+    """Frequencies [MHz], (M,), and the covariance of resistance and reactance there [ohm²], (M, 2, 2)."""
     allowed, found = _accuracy_m(accuracy), []
     for each in _sensitivities(design):
         covariance = np.zeros((2, 2))
@@ -120,16 +124,28 @@ def _spreads(design: Design, accuracy: Accuracy) -> tuple[list[float], Floats]:
             part = np.array([change.real, change.imag])
             covariance += np.outer(part, part)
         found.append(covariance)
-    band = design.band
-    return [band.low_mhz, band.centre_mhz, band.high_mhz], np.array(found)
+    return _marks_mhz(design), np.array(found)
 
 
 @lru_cache(maxsize=4)
 def _sensitivities(design: Design) -> tuple[tuple[Sensitivity, ...], ...]:
-    """At the band's lower edge, centre and upper edge."""
+    """At each of the marks."""
+    model = Model(wires_of(design), hz_from_mhz(design.band.high_mhz))
+    return tuple(sensitivities(model, hz_from_mhz(f))[1] for f in _marks_mhz(design))
+
+
+def _marks_mhz(design: Design) -> list[float]:
+    """Lower edge, centre and upper edge of the band; of a narrow band the centre alone [MHz]."""
     band = design.band
-    model = Model(wires_of(design), hz_from_mhz(band.high_mhz))
-    return tuple(sensitivities(model, hz_from_mhz(f))[1] for f in (band.low_mhz, band.centre_mhz, band.high_mhz))
+    if band.high_mhz - band.low_mhz <= NARROW * band.centre_mhz:
+        return [band.centre_mhz]
+    return [band.low_mhz, band.centre_mhz, band.high_mhz]
+
+
+def _middle(design: Design) -> tuple[Sensitivity, ...]:
+    """At the band's centre."""
+    found = _sensitivities(design)
+    return found[len(found) // 2]
 
 
 def _accuracy_m(accuracy: Accuracy) -> dict[Dimension, float]:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from boomwright.book.content import Block, Caution, Chapter, Facts, Heading, Paragraph, Step, Steps, Table, Topic
 from boomwright.book.run import Run
-from boomwright.book.words import figure, mm
+from boomwright.book.words import figure, mm, rough
 from boomwright.plan.mounting import (
     AIR_KG_M3,
     GUSTS_M_S,
@@ -30,7 +30,7 @@ def chapter(run: Run) -> Chapter:
         Heading("Wind"),
         _wind_table(run),
         Paragraph(
-            f"Force = half of {figure(AIR_KG_M3)} kg/m3 x speed squared x drag x area, with {figure(ROUND_DRAG)} "
+            f"Force = half of {figure(AIR_KG_M3)} kg/m³ x speed squared x drag x area, with {figure(ROUND_DRAG)} "
             "for round "
             f"bars and {figure(SQUARE_DRAG)} for square ones; nothing is taken off for one part behind another, "
             "nothing "
@@ -68,9 +68,9 @@ def _mass_table(run: Run) -> Table:
 def _wind_table(run: Run) -> Table:
     rows = []
     for view, words in VIEW_WORDS.items():
-        forces = tuple(f"{run.mounting.wind_n(view, speed):.2g}" for speed in GUSTS_M_S)
+        forces = tuple(rough(run.mounting.wind_n(view, speed)) for speed in GUSTS_M_S)
         rows.append((words, figure(run.mounting.area_mm2(view) / 100.0, 1), *forces))
-    head = ("Wind", "Area [cm2]", *(f"Force at {figure(speed)} m/s [N]" for speed in GUSTS_M_S))
+    head = ("Wind", "Area [cm²]", *(f"Force at {figure(speed)} m/s [N]" for speed in GUSTS_M_S))
     return Table(head, tuple(rows), "Wind area and force.")
 
 
@@ -96,7 +96,7 @@ def _steps(run: Run) -> list[Step]:
     )
     worst = max(run.mounting.wind_n(view, max(GUSTS_M_S)) for view in VIEW_WORDS)
     wind = Caution(
-        f"A gust of {figure(max(GUSTS_M_S))} m/s pulls with up to {worst:.2g} N at the top of your mast, the "
+        f"A gust of {figure(max(GUSTS_M_S))} m/s pulls with up to {rough(worst)} N at the top of your mast, the "
         "mast's own "
         "wind load added. Do not work at height in wind.",
         Topic.WIND,

@@ -158,4 +158,4 @@ def _sheet_table(run: Run, sheets: list[SheetEstimate]) -> Table:
         rows.append((one.stem, str(one.pieces), figure(one.area_mm2 / 100.0, 1), mass))
     laser = run.shop.laser
     caption = f"Parts from {mm(laser.sheet_mm)} {laser.material}; the files have the kerf of {mm(laser.kerf_mm)} taken."
-    return Table(("Part", "Pieces", "Area [cm2]", "Mass [g]"), tuple(rows), caption)
+    return Table(("Part", "Pieces", "Area [cm²]", "Mass [g]"), tuple(rows), caption)

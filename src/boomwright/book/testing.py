@@ -13,7 +13,7 @@ from boomwright.book.measurement import (
     readings,
 )
 from boomwright.book.run import Run
-from boomwright.book.words import figure, mhz, mm, ohms
+from boomwright.book.words import figure, mhz, mm, ohms, rough
 from boomwright.rf.sensitivity import Dimension
 
 MOST_ROWS = 11
@@ -107,7 +107,7 @@ def _limit_words(run: Run) -> str:
         f"The limits hold for a shop as true as yours says ({mm(a.length_mm)} in length, {mm(a.position_mm)} in place, "
         f"{mm(a.height_mm)} in height, {mm(a.diameter_mm)} in diameter, one standard deviation each), at "
         f"{figure(DEVIATIONS)} standard deviations to first order. The gain then spreads by "
-        f"{gain_spread_db(run):.2g} dB. Boom, "
+        f"{rough(gain_spread_db(run))} dB. Boom, "
         "resin, adhesive and cable are not counted: they can shift the whole curve a little to the side."
     )
 
@@ -117,7 +117,7 @@ def _deviation_table(run: Run, found: tuple[Reading, ...]) -> Table:
     worst = effects(run)[0]
     best = max(found, key=lambda reading: reading.return_loss_db)
     if per_mhz is not None:
-        size = f"about {per_mhz:.2g} mm for each MHz"
+        size = f"about {rough(per_mhz)} mm for each MHz"
     else:
         size = "length alone does not settle it here; compare with the table of dimensions"
     shallow = f"{worst.tag} {DIMENSION_WORDS[worst.dimension]}"
@@ -162,9 +162,9 @@ def _effect_table(run: Run) -> Table:
         rows.append(
             (
                 f"{one.tag} {DIMENSION_WORDS[one.dimension]}",
-                f"{change.real:.2g} {sign} j{abs(change.imag):.2g}",
-                f"{one.return_loss_db_mm:.2g}",
-                f"{one.gain_db_mm:.2g}",
+                f"{rough(change.real)} {sign} j{rough(abs(change.imag))}",
+                f"{rough(one.return_loss_db_mm)}",
+                f"{rough(one.gain_db_mm)}",
                 mm(one.allowed_mm),
             )
         )

@@ -2,7 +2,11 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Sequence
+
+LEAST_ROUGH = 1e-4
+"""A change smaller than this of anything in the book is none."""
 
 
 def figure(value: float, decimals: int = 2) -> str:
@@ -10,6 +14,14 @@ def figure(value: float, decimals: int = 2) -> str:
     text = f"{value:.{decimals}f}"
     text = text.rstrip("0").rstrip(".") if "." in text else text
     return "0" if text in ("-0", "") else text
+
+
+def rough(value: float, digits: int = 2) -> str:
+    """A number with so many digits that count, for what is known no better; never with a power of ten."""
+    if abs(value) < LEAST_ROUGH:
+        return "0"
+    decimals = max(digits - 1 - math.floor(math.log10(abs(value))), 0)
+    return figure(value, decimals)
 
 
 def mm(value: float, decimals: int = 2) -> str:
