@@ -15,7 +15,7 @@ from boomwright.book.content import (
     Table,
     Topic,
 )
-from boomwright.book.run import Run
+from boomwright.book.run import CRADLES, Run
 from boomwright.book.words import counted, figure, mm
 from boomwright.design.centreline import developed_length_mm, loop_drop_mm
 from boomwright.plan.former import plan_former
@@ -27,9 +27,9 @@ def chapter(run: Run) -> Chapter:
     driven = run.design.driven
     blocks: list[Block] = []
     if driven.form == "straight":
-        blocks += [Heading("Sawing the gap"), Figure(Picture.FORMER, _former_words(run)), Steps(tuple(_jig_steps(run)))]
+        blocks += [Heading("Sawing the gap"), _former_block(run), Steps(tuple(_jig_steps(run)))]
     else:
-        blocks += [Heading("Bending"), Figure(Picture.FORMER, _former_words(run)), Steps(tuple(_bend_steps(run)))]
+        blocks += [Heading("Bending"), _former_block(run), Steps(tuple(_bend_steps(run)))]
         if run.has("former"):
             blocks.append(_bend_table(run))
     blocks += [Heading("Fitting"), Steps(tuple(_fit_steps(run)))]
@@ -41,11 +41,11 @@ def chapter(run: Run) -> Chapter:
     return Chapter("The driven element", "driven", tuple(blocks))
 
 
-def _former_words(run: Run) -> str:
-    if run.has("former"):
-        straight = run.design.driven.form == "straight"
-        return "The jig that saws the feed gap." if straight else "The former: stop, channel and posts."
-    return f"This run has no former: {run.why_not('former')}."
+def _former_block(run: Run) -> Block:
+    if not run.has("former"):
+        return Paragraph(f"This run has no former: {run.why_not('former')}.")
+    straight = run.design.driven.form == "straight"
+    return Figure(Picture.FORMER, "The jig that saws the gap." if straight else "The former: stop, channel and posts.")
 
 
 def _jig_steps(run: Run) -> list[Step]:
@@ -145,13 +145,14 @@ def _bend_table(run: Run) -> Table:
 
 def _fit_steps(run: Run) -> list[Step]:
     driven = run.design.driven
+    picture = Picture.CRADLE_DRIVEN if run.has(*CRADLES) else None
     if run.driven_lies and run.plan.seat.grooves:
         return [
             Step(
                 "Check the driven element, glued with the rods: its gap lies over the pocket in the boom's middle.",
                 f"The gap is {mm(driven.gap_mm)}, the same on both sides of the boom's middle line, and free of "
                 "adhesive.",
-                Picture.CRADLE_DRIVEN,
+                picture,
             )
         ]
     if run.driven_lies:
@@ -160,7 +161,7 @@ def _fit_steps(run: Run) -> list[Step]:
             Step(
                 f"Lay both halves {cradle} beside the boom; nothing but the resin block will hold them.",
                 f"They are in one line, {mm(driven.gap_mm)} apart, and clear of the boom by the same on both sides.",
-                Picture.CRADLE_DRIVEN,
+                picture,
             )
         ]
     if driven.form == "loop":
@@ -171,7 +172,7 @@ def _fit_steps(run: Run) -> list[Step]:
                 f"at {mm(driven.at_mm)} from the datum, its gap lowest, and twist it shut "
                 f"to {mm(driven.gap_mm)}. {clip}.",
                 "It stands square to the boom from the side and from above, and the boom passes through its middle.",
-                Picture.CRADLE_DRIVEN,
+                picture,
             )
         ]
     return [
@@ -180,7 +181,7 @@ def _fit_steps(run: Run) -> list[Step]:
             f"{mm(driven.spacing_mm or 0.0)} "
             "above it, and hold it upright until cured.",
             "A square on the boom touches the bend at both ends, and the gap lies over the pocket.",
-            Picture.CRADLE_DRIVEN,
+            picture,
         )
     ]
 

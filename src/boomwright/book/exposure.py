@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from boomwright.book.content import Block, Caution, Chapter, Facts, Heading, Paragraph, Step, Steps, Table, Topic
 from boomwright.book.run import Run
-from boomwright.book.words import figure, metres
+from boomwright.book.words import figure, metres, rough
 from boomwright.design.model import Transmitter
 from boomwright.rf.exposure import (
     GROUND_REFLECTION,
@@ -60,7 +60,7 @@ def _intro(run: Run) -> str:
 def _facts(run: Run, source: Source) -> tuple[tuple[str, str], ...]:
     facts = [("Largest gain in the band", f"{figure(run.most_gain_dbi)} dBi")]
     if run.design.transmitter is not None:
-        facts.append(("EIRP", f"{figure(source.eirp_w, 3)} W"))
+        facts.append(("EIRP", f"{rough(source.eirp_w, 3)} W"))
     return (
         *facts,
         ("Reactive near field reaches to", metres(reactive_m(source))),
@@ -72,7 +72,7 @@ def _distance_table(transmitter: Transmitter, source: Source) -> Table:
     rows = tuple(_row(one) for one in distances(source))
     caption = (
         f"{figure(transmitter.power_w, 4)} W, {figure(100.0 * transmitter.duty)} percent on the air, "
-        f"EIRP {figure(source.eirp_w, 3)} W."
+        f"EIRP {rough(source.eirp_w, 3)} W."
     )
     head = ("Guideline", "For", "Limit [W/m²]", "Averaged over", "Free field", "With the ground", "Keep")
     return Table(head, rows, caption)
@@ -124,7 +124,7 @@ def _steps(run: Run, sources: list[tuple[Transmitter, Source]], known: tuple[Dis
             exposure,
         ),
         Step(
-            f"Compare the radiated power ({figure(source.eirp_w, 3)} W EIRP at {figure(transmitter.power_w, 4)} "
+            f"Compare the radiated power ({rough(source.eirp_w, 3)} W EIRP at {figure(transmitter.power_w, 4)} "
             "W) with what your "
             "regulator allows in this band.",
             "It is below the limit, cable loss left out.",

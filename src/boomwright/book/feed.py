@@ -92,7 +92,9 @@ def _choke_steps(choke: Choke) -> list[Step]:
 def _rule_check(rule: str) -> str:
     if "open end" in rule or "braids" in rule:
         return "A meter shows contact where it is soldered and none where it is open."
-    if "jacket" in rule or "centre the cable" in rule:
+    if "jacket" in rule:
+        return "With the analyser on, a hand round the cable behind the sleeve changes nothing."
+    if "centre the cable" in rule:
         return "The space between cable and sleeve is the same all round."
     if "length" in rule:
         return "A rule laid along it, braid to braid, shows the length of the table."

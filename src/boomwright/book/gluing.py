@@ -50,9 +50,13 @@ def _try_step(run: Run) -> Step:
     if not run.has(*CRADLES):
         return Step(f"Lay everything together dry: boom, {tags}.", "Every rod seats without force and stands square.")
     play = 2.0 * run.shop.printer.slide_clearance_mm
-    pieces = len(run.pieces("cradle"))
+    aside = sum(1 for stem in run.pieces("cradle") if "outrigger" in stem)
+    pieces = len(run.pieces("cradle")) - aside
     joined = (
         f"Join the {counted(pieces, 'section')} of the cradle in the order of their numbers. " if pieces > 1 else ""
+    )
+    joined += f"Set the {counted(aside, 'outrigger')} on the rails by their tags: they carry the end stops. " * (
+        aside > 0
     )
     through = [hole.tag for hole in run.plan.seat.holes]
     if through:
@@ -115,7 +119,7 @@ def _groove_steps(run: Run) -> list[Step]:
             "must not "
             "slump upside down.",
             f"A thin line of adhesive shows at both sides of each rod, no drop hangs, and the film is about {mm(gap)}.",
-            Picture.CRADLE_BOOM,
+            Picture.CRADLE_BOOM if run.has(*CRADLES) else None,
         )
     )
     if run.has(*CRADLES):
