@@ -8,7 +8,7 @@ import samples
 
 from boomwright.design.model import Design, Seat
 from boomwright.parts.antenna import antenna_bodies
-from boomwright.parts.cradle import cradle_shape
+from boomwright.parts.cradle_solid import section_shape
 from boomwright.parts.solids import box, cylinder, place
 from boomwright.plan.compensation import NOMINAL, Offsets
 from boomwright.plan.cradle import CradlePlan, plan_cradle
@@ -40,6 +40,11 @@ def laid(design: Design) -> Laid:
     return Laid(design, seat, cradle)
 
 
+def shape_of(cradle: CradlePlan, offsets: Offsets = NOMINAL) -> cq.Shape:
+    (section,) = cradle.sections
+    return section_shape(section, cradle.axis_height_mm, Shop().printer.press_clearance_mm, offsets)
+
+
 def common_mm3(first: cq.Shape, second: cq.Shape) -> float:
     common = first.intersect(second)
     return sum(solid.Volume() for solid in common.Solids())
@@ -49,7 +54,7 @@ def common_mm3(first: cq.Shape, second: cq.Shape) -> float:
 @pytest.mark.parametrize("design", samples.FITTING, ids=lambda d: d.name)
 def test_one_sound_solid_on_the_bed_that_overlaps_nothing(design: Design) -> None:
     plan = laid(design)
-    solid = cradle_shape(plan.cradle)
+    solid = shape_of(plan.cradle)
     assert solid.isValid()
     assert solid.ShapeType() == "Solid"
     assert solid.BoundingBox().zmin == pytest.approx(0.0, abs=1e-6)
@@ -75,7 +80,7 @@ def test_one_sound_solid_on_the_bed_that_overlaps_nothing(design: Design) -> Non
 def test_every_conductor_rests_in_every_notch(design: Design, growth_mm: float) -> None:
     """Drawn for a printer that grows outlines, each notch lies lower by the growth (faces at 45 degrees)."""
     plan = laid(design)
-    solid = cradle_shape(plan.cradle, Offsets(outline_growth_mm=growth_mm) if growth_mm else NOMINAL)
+    solid = shape_of(plan.cradle, Offsets(outline_growth_mm=growth_mm) if growth_mm else NOMINAL)
     height = plan.cradle.axis_height_mm - growth_mm
     for bearer in plan.cradle.bearers:
         middle, length = sum(bearer.y_mm) / 2.0, 0.5
@@ -93,7 +98,7 @@ def test_every_conductor_rests_in_every_notch(design: Design, growth_mm: float) 
 @pytest.mark.parametrize("design", [samples.GAUGE, samples.CAMERA, samples.TUBE_915], ids=lambda d: d.name)
 def test_relief_measured_from_every_bond_line(design: Design) -> None:
     plan = laid(design)
-    solid = cradle_shape(plan.cradle)
+    solid = shape_of(plan.cradle)
     height = plan.cradle.axis_height_mm
     for bond in plan.seat.bond_lines:
         low = cq.Vector(bond.at_mm - bond.half_x_mm, -bond.half_y_mm, height - bond.high_z_mm)
@@ -103,7 +108,7 @@ def test_relief_measured_from_every_bond_line(design: Design) -> None:
 
 @pytest.mark.parametrize("design", [samples.GAUGE, samples.CAMERA], ids=lambda d: d.name)
 def test_no_face_hangs_over_more_than_45_degrees(design: Design) -> None:
-    solid = cradle_shape(laid(design).cradle)
+    solid = shape_of(laid(design).cradle)
     for face in solid.Faces():
         centre = face.Center()
         down = -face.normalAt(centre).z

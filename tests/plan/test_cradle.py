@@ -99,21 +99,25 @@ def test_square_saddle_carries_the_booms_face() -> None:
         assert saddle.channel_half_mm == pytest.approx(seat.half_width_mm + 0.15)
 
 
-def test_a_cradle_too_long_for_the_bed_names_the_overrun() -> None:
-    shop = Shop(printer=Printer(bed_mm=(180.0, 180.0, 200.0)))
-    cradle, _, faults = cradle_of(samples.GAUGE, shop)
-    (x0, x1), (y0, y1), (_, z1) = cradle.extent_mm
-    assert faults == [
-        f"printer.bed_mm: the cradle is {x1 - x0:.1f} x {y1 - y0:.1f} x {z1:.1f} mm: {x1 - x0 - 180.0:.1f} mm too long "
-        "for the bed of 180 x 180 x 200\n"
-        "  fix: use a printer with a larger bed, shorten boom or rods, or name the other parts with --only"
-    ]
-
-
 def test_a_bed_is_used_either_way_round() -> None:
     wide = cradle_of(samples.CAMERA, Shop(printer=Printer(bed_mm=(70.0, 40.0, 50.0))))[2]
     deep = cradle_of(samples.CAMERA, Shop(printer=Printer(bed_mm=(40.0, 70.0, 50.0))))[2]
     assert wide == deep == []
+
+
+def test_a_cradle_higher_than_the_printer_builds_is_refused() -> None:
+    _, _, faults = cradle_of(samples.GAUGE, Shop(printer=Printer(bed_mm=(220.0, 220.0, 9.0))))
+    assert faults == [
+        "printer.bed_mm: the cradle is 9.8 mm high, the printer builds 9\n  fix: use a printer that builds higher"
+    ]
+
+
+@pytest.mark.parametrize("design", samples.FITTING, ids=lambda d: d.name)
+def test_what_fits_the_bed_stays_one_piece(design: Design) -> None:
+    cradle, _, _ = cradle_of(design)
+    assert [section.stem for section in cradle.sections] == ["cradle-1"]
+    assert cradle.joints == ()
+    assert cradle.frame_of(cradle.sections[0]) == cradle.frame
 
 
 def test_no_room_for_a_saddle_is_a_fault_of_the_tail() -> None:

@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import Any
 
 from boomwright.errors import AccessError, CatalogueError, MeasureError
-from boomwright.formats import bodies, notches, release
+from boomwright.formats import bodies, joints, notches, release
 from boomwright.formats.brep import ReadBody, StepReading
 from boomwright.formats.format import FileEntry, Format
 from boomwright.pieces import Body, Expectation, Matrix, Piece, Probe, SolidPiece
@@ -28,7 +28,12 @@ LOWEST_ALLOWED_MM = 1e-3
 """How far from the bed a part in print orientation may start."""
 
 Measure = Callable[[Any, Mapping[str, Any], Sequence[Any]], float]
-MEASURES: dict[str, Measure] = {**bodies.MEASURES, **notches.BODY_MEASURES, **release.MEASURES}
+MEASURES: dict[str, Measure] = {
+    **bodies.MEASURES,
+    **joints.MEASURES,
+    **notches.BODY_MEASURES,
+    **release.MEASURES,
+}
 
 
 class Step(Format):

@@ -16,7 +16,7 @@ DEPTH_MM = 0.6
 class Label:
     """A line of text: its left end on the baseline, height of capitals, and the face it is cut into [mm].
 
-    upright   reads along +y instead of +x
+    quarter_turns   anticlockwise, about that end: 0 reads along +x, 1 along +y, -1 along -y
     """
 
     text: str
@@ -24,15 +24,16 @@ class Label:
     y_mm: float
     height_mm: float
     top_mm: float
-    upright: bool = False
+    quarter_turns: int = 0
 
     @property
     def lines(self) -> tuple[Polyline, ...]:
         """Its strokes in x and y [mm]."""
-        placed = strokes(self.text, self.height_mm)
-        if self.upright:
-            return tuple(tuple((self.x_mm - v, self.y_mm + u) for u, v in line) for line in placed)
-        return tuple(tuple((self.x_mm + u, self.y_mm + v) for u, v in line) for line in placed)
+        a, b = ((1, 0), (0, 1), (-1, 0), (0, -1))[self.quarter_turns % 4]
+        return tuple(
+            tuple((self.x_mm + a * u - b * v, self.y_mm + b * u + a * v) for u, v in line)
+            for line in strokes(self.text, self.height_mm)
+        )
 
 
 def fitting_height_mm(text: str, room_mm: float, wish_mm: float) -> float:
