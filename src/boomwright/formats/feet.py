@@ -1,6 +1,6 @@
-"""The chamfer round the bottom of a printed part, against elephant's foot: the first layers squeeze outward. Millimetres.
+"""The chamfer round the bottom of a printed part, against elephant's foot: first layers squeeze outward.
 
-Measured at the outer edges: slots, notches and windows narrower than 10 are not among them.
+Measured in millimetres at the outer edges: slots, notches and windows narrower than 10 are not among them.
 """
 
 from __future__ import annotations
@@ -23,7 +23,7 @@ ABOVE_MM = 0.2
 """How far above its wished height a chamfer is looked past for the part's full outline."""
 
 SEEN_MM = 0.005
-"""Edges that lie deeper than this inside the outline's hull of slots are a slot's own."""
+"""Edges that lie deeper than this inside the outline with its slots filled are a slot's own."""
 
 
 def measure_foot_chamfer(reading: MeshReading, arguments: Mapping[str, Any], also: Sequence[Any]) -> float:

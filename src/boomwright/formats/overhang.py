@@ -14,16 +14,14 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 from numpy.typing import NDArray
 
-from boomwright.formats.brep import Vector
-
 if TYPE_CHECKING:
     from boomwright.formats.meshes import MeshReading
 
 STEEPEST_DEG, ANGLE_ALLOWED_DEG = 45.0, 1.0
 BRIDGE_MM = 10.0
-BORE_MM = 6.0
-CROWN_MM = BORE_MM * math.sin(math.radians(STEEPEST_DEG))
-"""Width of the part of a lying bore's roof that is flatter than 45 degrees."""
+BORE_MM, FACET_DEG = 6.0, 3.0
+CROWN_MM = BORE_MM * math.sin(math.radians(STEEPEST_DEG + FACET_DEG))
+"""Width of the part of a lying bore's roof that is flatter than 45 degrees, to the end of its outermost facets."""
 
 LEVEL = math.cos(math.radians(1.0))
 ON_BED_MM = 1e-3
@@ -66,9 +64,7 @@ def measure_midair_starts(reading: MeshReading, arguments: Mapping[str, Any], al
     np.logical_or.at(has_lower, root[start], heights[end] < heights[start] - LEVEL_MM)
     np.logical_or.at(has_lower, root[end], heights[start] < heights[end] - LEVEL_MM)
     looks = np.zeros(len(heights))
-    across = np.cross(
-        reading.corners[:, 1] - reading.corners[:, 0], reading.corners[:, 2] - reading.corners[:, 0]
-    )
+    across = np.cross(reading.corners[:, 1] - reading.corners[:, 0], reading.corners[:, 2] - reading.corners[:, 0])
     for corner in range(3):
         np.add.at(looks, root[reading.triangles[:, corner]], across[:, 2])
     own = root == np.arange(len(heights))
@@ -170,6 +166,3 @@ def _joined(count: int, one: Indices, other: Indices) -> Indices:
         while not np.array_equal(root, root[root]):
             root = root[root]
     return root
-
-
-Measured = Vector

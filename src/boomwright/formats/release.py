@@ -1,4 +1,4 @@
-"""Measures of a mould on its written halves: draft, the way off the antenna, the resin's room, the pins' play.
+"""Measures of a mould on its written halves: draft, the way off the antenna, the pins' play; with those of pouring.
 
 Boxes, points, solids and moves are in the design's frame; `frame` is the file's (4 x 4, design to file), `also_frames`
 those of the further files, None = the design's own. Solids that stand in no file (coax, plug): see `placed`.
@@ -12,6 +12,7 @@ from typing import Any
 import numpy as np
 
 from boomwright.errors import MeasureError
+from boomwright.formats import pouring
 from boomwright.formats.brep import FaceView, StepReading, Vector
 from boomwright.formats.placed import (
     Arguments,
@@ -24,7 +25,6 @@ from boomwright.formats.placed import (
     matrix_of,
     mesh_of,
     obstacles_of,
-    plugs_of,
     shifted,
     solids_of,
 )
@@ -146,44 +146,6 @@ def measure_interference(reading: StepReading, arguments: Arguments, also: Seque
     return sum(common_mm3(body, others) for body in solids_of(reading, arguments.get("frame")))
 
 
-def measure_cavity_volume(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
-    """Room for resin in `box`: less the file's bodies, those of the further files, and `solids` [mm³].
-
-    fill, hollows      what plugs a tube's bore, and where grooves go through the plug
-    density_g_mm3      given: the resin's mass [g] instead
-
-    Taken from meshes: round bodies come out smaller by two thirds of the chord on their surface.
-    """
-    volume = sum(space.volume() for space in _spaces(reading, arguments, also))
-    return float(volume * float(arguments.get("density_g_mm3", 1.0)))
-
-
-def measure_connected(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
-    """In how many separate spaces of the room of `cavity_volume_mm3` the `points` lie; 0 if one lies in none."""
-    import manifold3d
-
-    spaces, found = _spaces(reading, arguments, also), set()
-    for point in np.asarray(arguments["points"], dtype=float):
-        drop = manifold3d.Manifold.sphere(0.05, 16).translate(tuple(point))
-        shares = [(space ^ drop).volume() for space in spaces]
-        if not shares or max(shares) < 0.5 * drop.volume():
-            return 0.0
-        found.add(int(np.argmax(shares)))
-    return float(len(found))
-
-
-def _spaces(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> list[Any]:
-    """The separate spaces of the room in `box`."""
-    import manifold3d
-
-    low, high = np.asarray(arguments["box"], dtype=float)
-    room = manifold3d.Manifold.cube(tuple(high - low)).translate(tuple(low))
-    inserts = [*solids_of(reading, arguments.get("frame")), *obstacles_of(arguments, also), *plugs_of(arguments)]
-    near = [one for one in inserts if boxes_meet(box_of(one), (low, high))]
-    left = manifold3d.Manifold.batch_boolean([room, *map(manifold_of, near)], manifold3d.OpType.Subtract)
-    return list(left.decompose())
-
-
 def measure_pin_play(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
     """Least play a side [mm] of the pins (further file) in their sockets (this file), out of line ones included.
 
@@ -227,7 +189,6 @@ MEASURES: dict[str, Callable[[Any, Arguments, Sequence[Any]], float]] = {
     "draft_deg": measure_draft,
     "sweep_overlap_mm3": measure_sweep,
     "interference_mm3": measure_interference,
-    "cavity_volume_mm3": measure_cavity_volume,
-    "cavity_connected": measure_connected,
     "pin_play_mm": measure_pin_play,
+    **pouring.MEASURES,
 }

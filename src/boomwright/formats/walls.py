@@ -1,9 +1,10 @@
 """The thinnest wall of a mesh that is printed flat on its bed, found in horizontal sections. Millimetres.
 
-A section is opened with a disc (shrunk and grown again by its radius): what a disc of the wished wall's diameter does
-not reach is thinner than that. Not counted, because no wall:
+Between two holes of a section, or a hole and its rim, the wall is their distance. For all others the section is opened
+with a disc (shrunk and grown again by its radius): what a disc of the wished wall's diameter does not reach is thinner
+than that. Not counted, because no wall:
 
-- the tips of corners: what hangs on the rest by one side only and stands out from it by less than the wished wall;
+- the tips of corners: what hangs on the rest by one side only and stands out from it by less than 1.5 wished walls;
 - what is less than 0.7 high, such as the material between the strokes of an engraved letter, which carries nothing:
   each section is joined with the one 0.7 below before it is opened;
 - the lowest 0.5, where the bottom edge is chamfered against elephant's foot.
@@ -32,6 +33,9 @@ OFF_LEVEL_MM = 0.02
 APART_MM = 0.5
 """Levels nearer than this are one: more than a layer, less than anything that stands alone."""
 
+SPIKE = 1.5
+"""A corner's tip stands out by less than this many walls, down to an angle of 29 degrees."""
+
 THIN_SLAB_MM = 1.0
 """A slab lower than this is cut once, in its middle."""
 
@@ -53,6 +57,7 @@ def measure_thinnest_wall(reading: MeshReading, arguments: Mapping[str, Any], al
     thinnest, growth = float(arguments["up_to_mm"]), float(arguments.get("growth_mm", 0.0))
     for level in _levels(reading):
         area = _section(reading, level, growth)
+        thinnest = min(thinnest, _between_rings_mm(area))
         if _is_thin(area, thinnest):
             thinnest = _bisected_mm(area, thinnest)
     return thinnest
@@ -67,10 +72,11 @@ def _levels(reading: MeshReading) -> list[float]:
             levels.append(height)
     levels[-1] = max(levels[-1], float(heights[-1]))
     ends = list[float]()
-    for low, high in pairwise(levels):
+    floor = levels[0] + FOOT_MM
+    for low, high in ((max(low, floor), high) for low, high in pairwise(levels) if high > floor):
         thin = high - low < THIN_SLAB_MM
         ends += [(low + high) / 2.0] if thin else [low + OFF_LEVEL_MM, high - OFF_LEVEL_MM]
-    return [z for z in ends if z > heights[0] + FOOT_MM]
+    return ends
 
 
 def _section(reading: MeshReading, level_mm: float, growth_mm: float) -> Any:
@@ -81,6 +87,18 @@ def _section(reading: MeshReading, level_mm: float, growth_mm: float) -> Any:
     if growth_mm:
         area = area.buffer(growth_mm, join_style="mitre")
     return area.simplify(SIMPLER_MM)
+
+
+def _between_rings_mm(area: Any) -> float:
+    """Least distance between two holes of an area, or a hole and its rim [mm]; infinite without holes."""
+    import shapely
+
+    least = np.inf
+    for part in shapely.get_parts(area):
+        rings = np.array([part.exterior, *part.interiors])
+        one, other = np.triu_indices(len(rings), 1)
+        least = min(least, float(shapely.distance(rings[one], rings[other]).min(initial=np.inf)))
+    return least
 
 
 def thin_places(area: Any, wall_mm: float) -> Any:
@@ -95,7 +113,7 @@ def thin_places(area: Any, wall_mm: float) -> Any:
     if len(rest) == 0 or core.is_empty:
         return rest
     sides = shapely.intersection(shapely.buffer(rest, TOUCH_MM / 10.0, quad_segs=1), opened.intersection(area))
-    return rest[(shapely.get_num_geometries(sides) != 1) | (_reaches(rest, opened) > wall_mm)]
+    return rest[(shapely.get_num_geometries(sides) != 1) | (_reaches(rest, opened) > SPIKE * wall_mm)]
 
 
 def _reaches(pieces: Any, opened: Any) -> Any:

@@ -119,7 +119,9 @@ def _tool(guide: GuidePlan, one: GuideCut, x_mm: float, offsets: Offsets) -> Sha
     if one.depth_mm == 0.0:
         radius = (one.width_mm + offsets.hole_shrink_mm) / 2.0
         bore = cylinder((x_mm, 0.0, -1.0), (0, 0, 1), radius, guide.roof_mm + 2.0)
-        mouth = cq.Solid.makeCone(radius + 2.0 * CHAMFER_MM, radius, 2.0 * CHAMFER_MM, cq.Vector(x_mm, 0.0, -CHAMFER_MM))
+        mouth = cq.Solid.makeCone(
+            radius + 2.0 * CHAMFER_MM, radius, 2.0 * CHAMFER_MM, cq.Vector(x_mm, 0.0, -CHAMFER_MM)
+        )
         return unite(bore, [mouth])
     half, reach = one.width_mm / 2.0 + offsets.outline_growth_mm, guide.outer_half_mm + 1.0
     point = guide.roof_mm + _point_mm(one) + offsets.outline_growth_mm

@@ -26,6 +26,9 @@ NOTHING_MM3 = 1e-6
 DRAFT_ALLOWED_DEG = 1e-3
 VOLUME_ALLOWED_SHARE = 0.01
 PLACE_ALLOWED_MM = 0.005
+CEILING_ALLOWED_MM = 0.05
+END_ALLOWED_MM = 1.0
+"""Cavity beyond an opening: less than the opening's own radius and this."""
 
 
 class Mould(Part):
@@ -130,10 +133,29 @@ def _expect_closed(plan: Plan) -> list[Expectation]:
     around = _with_openings(mould)
     probe = Probe("cavity_connected", whole | {"box": around, "points": ends}, (other, ANTENNA))
     found.append(Expectation(file, "cavity is one space from funnel to vent", 1.0, 0.0, "", probe))
+    found += _expect_pouring(mould, whole | {"box": around})
     axes = [[_parting_point(mould, p.u_mm, p.y_mm), _pull_axis(mould)] for p in mould.face.pins]
     pins = {"frame": mould.frame("upper"), "also_frames": [mould.frame("lower")], "axes": axes}
     probe = Probe("pin_play_mm", pins, (other,))
     found.append(Expectation(file, "play of the pins in their sockets", mould.play_mm, PLACE_ALLOWED_MM, "mm", probe))
+    return found
+
+
+def _expect_pouring(mould: MouldPlan, room: dict[str, Any]) -> list[Expectation]:
+    """Funnel and vent begin at the cavity's ceiling, one at each end of it."""
+    named = {"funnel": mould.funnel, "vent": mould.vent}
+    openings = [[list(one.at), max(radius for _, radius in one.stages) + 0.1] for one in named.values()]
+    base = room | {"up": list(mould.funnel.direction), "openings": openings}
+    if mould.coax is not None and mould.coax.start[:2] == mould.coax.end[:2]:
+        base["passages"] = [[list(mould.coax.start), mould.coax.radius_mm + mould.clearance_mm + 0.1]]
+    found = []
+    for number, (word, opening) in enumerate(named.items()):
+        for quantity, what, expected, allowed in (
+            ("above_mm", f"cavity above the {word}'s beginning", 0.0, CEILING_ALLOWED_MM),
+            ("beside_mm", f"{word} from the cavity's end", opening.stages[0][1], END_ALLOWED_MM),
+        ):
+            probe = Probe("ceiling", base | {"opening": number, "quantity": quantity}, (_file("lower"), ANTENNA))
+            found.append(Expectation(_file("upper"), what, expected, allowed, "mm", probe, "at_most"))
     return found
 
 

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import replace
 from typing import TYPE_CHECKING
+
+import numpy as np
 
 from boomwright.parts.solids import (
     Shape,
@@ -108,17 +109,26 @@ def cavity_shape(mould: MouldPlan, growth_mm: float = 0.0) -> Shape:
 def _lead_in(mould: MouldPlan, bed_mm: float, widening_mm: float) -> list[Shape]:
     """The boom's channel wider where it meets the bed, as the outer edges are broken there; none if it ends before."""
     import cadquery as cq
+    import shapely
 
-    channel = mould.boom
+    channel, c = mould.boom, CHAMFER_MM
     if not channel.x_mm[0] < bed_mm < channel.x_mm[1]:
         return []
     inward = -1.0 if bed_mm > mould.at_mm else 1.0
-    wires = []
-    for into, wider in ((-CHAMFER_MM, 2.0 * CHAMFER_MM), (CHAMFER_MM, 0.0)):
-        x = bed_mm + inward * into
-        slab = boom_channel(replace(channel, x_mm=(x, x + 1.0)), mould.clearance_mm + wider, widening_mm, "x")
-        wires.append(slab.faces("<X").outerWire())
-    return [cq.Solid.makeLoft(wires, True)]
+    narrow = channel.half_mm + mould.clearance_mm + widening_mm
+    outside, inside = bed_mm - inward * c, bed_mm + inward * c
+    far = channel.axis_mm + (4.0 * channel.half_mm + OVERRUN_MM) * (1.0 if channel.open == "up" else -1.0)
+    wide = narrow + 2.0 * c
+    outline = shapely.Polygon([(outside, -wide), (inside, -narrow), (inside, narrow), (outside, wide)])
+    if channel.section == "round":
+        start, along = cq.Vector(outside, 0.0, channel.axis_mm), cq.Vector(inward, 0.0, 0.0)
+        cone = cq.Solid.makeCone(wide, narrow, 2.0 * c, start, along)
+        return [cone, prism_along_z(outline, (min(channel.axis_mm, far), max(channel.axis_mm, far)))]
+    closed = channel.axis_mm + (-1.0 if channel.open == "up" else 1.0) * np.array([wide, narrow])
+    profile = [(outside, closed[0]), (inside, closed[1]), (inside, far), (outside, far)]
+    across = prism_along_y([(float(x), float(z)) for x, z in profile], (-wide, wide))
+    reach = (min(far, *closed.tolist()), max(far, *closed.tolist()))
+    return [across.intersect(prism_along_z(outline, reach))]
 
 
 def boom_channel(channel: BoomChannel, clearance_mm: float, widening_mm: float, printed_along: Pull) -> Shape:

@@ -140,7 +140,7 @@ def _apart(one: tuple[float, float], other: tuple[float, float]) -> float:
 
 
 def _tie_notches(u_mm: Span, y_mm: Span, walled: BaseGeometry) -> tuple[Notch, ...]:
-    """A notch in both edges of the flange, as near the body as what is `walled` lets it; none where there is no room."""
+    """A notch in both edges of the flange, as near the body as what is `walled` lets it, or none."""
     for depth in TIE_DEPTHS_MM:
         for step in range(int(y_mm[1] - TIE_WIDTH_MM - y_mm[0]) + 1):
             y = (y_mm[0] + step, y_mm[0] + step + TIE_WIDTH_MM)
