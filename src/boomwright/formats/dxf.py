@@ -83,6 +83,7 @@ class Dxf(Format):
             room = sheet_margin_mm(laser)
             rules += [
                 none("open contours on the cutting layer", "", "open_contours", {"layer": laser.layers.cut}),
+                none("contours that cross or touch", "", "crossings", {"layer": laser.layers.cut}),
                 none("layers the shop does not know", "", "unknown_layers", {"layers": layers}),
                 none("overrun of the sheet", "mm", "outside_mm", {"size": list(laser.sheet_size_mm)}),
                 none("parts nearer than 2 kerfs + 1", "", "too_near", {"layer": laser.layers.cut, "least_mm": room}),

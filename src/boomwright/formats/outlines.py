@@ -248,6 +248,17 @@ def measure_too_near(reading: DxfReading, arguments: Arguments, also: Sequence[A
     return float(np.count_nonzero(left < right))
 
 
+def measure_crossings(reading: DxfReading, arguments: Arguments, also: Sequence[Any]) -> float:
+    """Number of pairs of closed outlines on `layer` that cross or touch."""
+    from shapely import STRtree
+
+    rings = [o.polygon.exterior for o in reading.on(arguments.get("layer")) if o.closed and not o.polygon.is_empty]
+    if len(rings) < 2:
+        return 0.0
+    left, right = STRtree(rings).query(rings, predicate="dwithin", distance=2.0 * FACET_MM)
+    return float(np.count_nonzero(left < right))
+
+
 def measure_line_at(reading: DxfReading, arguments: Arguments, also: Sequence[Any]) -> float:
     """x of the vertical straight line on `layer` nearest to `x_mm`, at most 1 mm off [mm]."""
     at = float(arguments["x_mm"])
@@ -293,6 +304,7 @@ MEASURES: dict[str, Callable[[DxfReading, Arguments, Sequence[Any]], float]] = {
     "outside_mm": measure_outside,
     "spacing_mm": measure_spacing,
     "too_near": measure_too_near,
+    "crossings": measure_crossings,
     "line_at": measure_line_at,
     "circle": measure_circle,
 }

@@ -29,6 +29,7 @@ from boomwright.plan.sheet_frame import (
 )
 from boomwright.plan.sheet_lines import TIE_SLOT_MM, LeftOutError, Lines, SaddleLine, lay_lines
 from boomwright.plan.sheet_plate import Plate, Rect, Standing, across, along_x, with_slots
+from boomwright.plan.sheet_splice import FISHPLATES_MM
 from boomwright.plan.sheet_words import with_words
 from boomwright.plan.size import Size
 from boomwright.shop.nesting import Place, fits_sheet, nest
@@ -74,7 +75,7 @@ def plan_sheet_cradle(
     """The laser-cut cradle of a design, its sizes with their origins, and what stands against it."""
     try:
         lines, sizes = lay_lines(design, boom, shop, seat)
-        standing = _standing(design, lines, shop)
+        standing = _spliced(design, lines, shop)
     except LeftOutError as reason:
         return SheetCradlePlan(left_out=str(reason)), [], []
     except TooLargeError as need:
@@ -107,6 +108,16 @@ def _squeeze_mm3(standing: list[Standing], shop: Shop) -> float:
             width, height = slot.u[1] - slot.u[0], slot.v[1] - slot.v[0]
             total += ((width - fit) * (height - fit) - width * height) * t
     return total
+
+
+def _spliced(design: Design, lines: Lines, shop: Shop) -> list[Standing]:
+    """Every plate, with the first fishplates that can join pieces small enough for the sheet."""
+    for length in FISHPLATES_MM[:-1]:
+        try:
+            return _standing(design, replace(lines, fishplate_mm=length), shop)
+        except TooLargeError:
+            continue
+    return _standing(design, replace(lines, fishplate_mm=FISHPLATES_MM[-1]), shop)
 
 
 def _standing(design: Design, lines: Lines, shop: Shop) -> list[Standing]:

@@ -20,21 +20,25 @@ from boomwright.plan.sheet_plate import (
     lying_beside,
     spans_meet,
 )
-from boomwright.plan.sheet_splice import FISHPLATE_MM, cut_line
+from boomwright.plan.sheet_splice import cut_line, feet_of
 from boomwright.shop.nesting import fits_sheet, sheet_room_mm
 from boomwright.shop.profile import Laser
 
 EDGE_MM = 4.0
+APART_MM = 0.5
+"""Between base plates side by side under one row of conductors."""
+
 SLEEPER_HALF_MM = 16.0
 FOOT_MM, LEAST_FOOT_MM = 8.0, 3.0
+FEET_WISHES_MM = ((2.0, FOOT_MM), (1.0, FOOT_MM), (1.0, 5.0), (1.0, LEAST_FOOT_MM))
+"""From a rail's end to its outermost foot, and the width of a foot: the first that leaves room for enough feet."""
+
 FEET_EVERY_MM, SPREADERS_EVERY_MM = 80.0, 250.0
 MOST_SPREADER_MM, BRACKET_MM = 300.0, 40.0
 OVER_BASE_MM = 3.0
 """Sheet below the holes of a rail."""
 
-FISHPLATE_FEET_MM = ((6.0, 14.0), (18.0, 26.0))
 SIDES = (1.0, -1.0)
-TOO_LARGE = "laser.sheet_size_mm"
 
 
 class TooLargeError(Exception):
@@ -66,16 +70,26 @@ def base_rooms(lines: Lines, laser: Laser) -> list[BaseRoom]:
     half = _half_width(lines, x)
     if fits_sheet((x[1] - x[0], 2.0 * half), laser):
         return [BaseRoom(Rect(x, (-half, half)), _window(lines))]
-    spans = _sleepers(lines)
-    wide = max(sheet_room_mm(laser))
-    for span in spans:
-        if span[1] - span[0] > wide:
-            raise TooLargeError(f"a base plate under conductors close together is {span[1] - span[0]:.4g} mm wide")
     rooms = []
-    for span in spans:
+    for span in (part for wide in _sleepers(lines) for part in _narrow(lines, wide, laser)):
         half = _half_width(lines, span)
         rooms.append(BaseRoom(Rect(span, (-half, half))))
     return rooms
+
+
+def _narrow(lines: Lines, span: Span, laser: Laser) -> list[Span]:
+    """A wide plate under conductors close together, cut between them: the rails hold its parts."""
+    widest = max(sheet_room_mm(laser))
+    foot = stop_foot_mm(lines) / 2.0 + EDGE_MM
+    taken = [(s.at_mm - foot, s.at_mm + foot) for s in lines.stops]
+    taken += [(s.x_mm[0] - EDGE_MM, s.x_mm[1] + EDGE_MM) for s in lines.saddles]
+    taken += [(p.held.at_mm - FOOT_MM, p.held.at_mm + FOOT_MM) for p in lines.props]
+    parts = cut_line(span, widest, taken, lines.fishplate_mm)
+    if parts is None:
+        raise TooLargeError(f"a base plate under conductors close together is {span[1] - span[0]:.4g} mm wide")
+    inner = [at for low, high in parts for at in (low + APART_MM / 2.0, high - APART_MM / 2.0)]
+    inner[0], inner[-1] = span
+    return list(zip(inner[::2], inner[1::2], strict=True))
 
 
 def _half_width(lines: Lines, x_mm: Span) -> float:
@@ -98,11 +112,16 @@ def _stop_x(lines: Lines, at_mm: float) -> Span:
 def _sleepers(lines: Lines) -> list[Span]:
     spans = [(h.at_mm - SLEEPER_HALF_MM, h.at_mm + SLEEPER_HALF_MM) for h in lines.held]
     spans += [(s.at_mm - SLEEPER_HALF_MM, s.at_mm + SLEEPER_HALF_MM) for s in lines.stops]
-    between = [sum(s.x_mm) / 2.0 for s in lines.saddles[1:-1]]
-    spans += [(m - SLEEPER_HALF_MM, m + SLEEPER_HALF_MM) for m in between]
-    # The saddles at the ends share the sleeper of the conductor beside them.
-    spans.append((lines.saddles[0].x_mm[0] - 6.0, lines.held[0].at_mm))
-    spans.append((lines.held[-1].at_mm, lines.saddles[-1].x_mm[1] + 6.0))
+    for saddle in lines.saddles:
+        x = saddle.x_mm
+        inside = lines.rail_x_mm[0] <= x[0] and x[1] <= lines.rail_x_mm[1]
+        # One beyond the rails' end shares the sleeper of the conductor beside it.
+        reach = SLEEPER_HALF_MM - lines.sheet_mm / 2.0 if inside else EDGE_MM + 2.0
+        spans.append((x[0] - reach, x[1] + reach))
+    if lines.saddles[0].x_mm[0] < lines.rail_x_mm[0]:
+        spans.append((lines.saddles[0].x_mm[0], lines.held[0].at_mm))
+    if lines.saddles[-1].x_mm[1] > lines.rail_x_mm[1]:
+        spans.append((lines.held[-1].at_mm, lines.saddles[-1].x_mm[1]))
     merged: list[Span] = []
     for low, high in sorted(spans):
         if merged and low < merged[-1][1] + EDGE_MM:
@@ -123,21 +142,26 @@ def rail_feet(lines: Lines, rooms: list[BaseRoom], fit_mm: float) -> list[Span]:
     half = stop_foot_mm(lines) / 2.0
     close = [s for s in lines.stops if s.inner_mm - lines.rails_mm[1] < web]
     taken = [(s.at_mm - half - web, s.at_mm + half + web) for s in close]
+    for end, wide in FEET_WISHES_MM:
+        rail = (lines.rail_x_mm[0] + end, lines.rail_x_mm[1] - end)
+        on_plates = [_feet_on(room, rail, taken, wide) for room in rooms]
+        feet = sorted(foot for found in on_plates for foot in found)
+        if all(on_plates) and len(feet) >= 2:
+            return feet
+    raise LeftOutError("the end stops leave no room between them for the feet of the rails")
+
+
+def _feet_on(room: BaseRoom, rail_x_mm: Span, taken: list[Span], wide_mm: float) -> list[Span]:
+    """The feet on one base plate, evenly spaced as far as there is room."""
+    low, high = max(room.rect.u[0] + 2.5, rail_x_mm[0]), min(room.rect.u[1] - 2.5, rail_x_mm[1])
+    free = [s for s in free_spans((low, high), taken) if s[1] - s[0] >= LEAST_FOOT_MM] if high > low else []
+    count = max(2, round((high - low) / FEET_EVERY_MM) + 1)
     feet: list[Span] = []
-    for room in rooms:
-        low = max(room.rect.u[0] + 2.5, lines.rail_x_mm[0] + 1.0)
-        high = min(room.rect.u[1] - 2.5, lines.rail_x_mm[1] - 1.0)
-        free = [s for s in free_spans((low, high), taken) if s[1] - s[0] >= LEAST_FOOT_MM] if high > low else []
-        if not free:
-            raise LeftOutError("the end stops leave no room between them for the rails' feet")
-        count = max(2, round((high - low) / FEET_EVERY_MM) + 1)
-        for i in range(count):
-            foot = _nearest(free, low + (high - low) * i / (count - 1), FOOT_MM)
-            if all(not spans_meet((foot[0] - OVER_BASE_MM, foot[1] + OVER_BASE_MM), other) for other in feet):
-                feet.append(foot)
-    if len(feet) < 2:
-        raise LeftOutError("the end stops leave no room between them for two feet of a rail")
-    return sorted(feet)
+    for i in range(count if free else 0):
+        foot = _nearest(free, low + (high - low) * i / (count - 1), wide_mm)
+        if all(not spans_meet((foot[0] - OVER_BASE_MM, foot[1] + OVER_BASE_MM), other) for other in feet):
+            feet.append(foot)
+    return feet
 
 
 def _nearest(free: list[Span], target: float, wish_mm: float) -> Span:
@@ -217,15 +241,14 @@ def prop_half_mm(radius_mm: float) -> float:
 def fishplate(lines: Lines) -> Plate:
     """The plate that bridges a joint of two base plates or two rails, its feet in both."""
     depth = min(STANDING_MM, lines.rails_mm[0] - 0.5)
-    half = FISHPLATE_MM / 2.0
-    spans = [*FISHPLATE_FEET_MM, *((-b, -a) for a, b in FISHPLATE_FEET_MM)]
-    feet = tuple(Rect(u, (-lines.sheet_mm, 0.0)) for u in sorted(spans))
+    half = lines.fishplate_mm / 2.0
+    feet = tuple(Rect(u, (-lines.sheet_mm, 0.0)) for u in feet_of(lines.fishplate_mm))
     return Plate("fishplate", "FISHPLATE", Rect((-half, half), (0.0, depth)), feet)
 
 
 def rail_pieces(lines: Lines, feet: list[Span], crossing: list[Standing], laser: Laser) -> list[Standing]:
     """Both rails, in as many pieces as the sheet asks for, and the fishplates on their inner faces."""
-    t, bridge, half = lines.sheet_mm, fishplate(lines), FISHPLATE_MM / 2.0
+    t, bridge, half = lines.sheet_mm, fishplate(lines), lines.fishplate_mm / 2.0
     depth = bridge.body.v[1]
     vees = [lines.vee(h) for h in lines.held]
     forbidden = [(v.at_mm - v.radius_mm * 1.5 - 2.5, v.at_mm + v.radius_mm * 1.5 + 2.5) for v in vees]
@@ -235,9 +258,13 @@ def rail_pieces(lines: Lines, feet: list[Span], crossing: list[Standing], laser:
     forbidden += [(x[0] - half - 2.0, x[1] + half + 2.0) for x, y, _ in blocks if _in_y(y, beside)]
     height = lines.axis_height_mm
     longest = _longest(height, laser)
-    pieces = cut_line(lines.rail_x_mm, longest, forbidden, lambda p: any(p[0] <= a and b <= p[1] for a, b in feet))
+
+    def holds(piece: Span) -> bool:
+        return any(piece[0] <= low and high <= piece[1] for low, high in feet)
+
+    pieces = cut_line(lines.rail_x_mm, longest, forbidden, lines.fishplate_mm, holds)
     if pieces is None:
-        raise TooLargeError(f"a rail is {height:g} mm high and needs pieces of about 100 mm between the rods")
+        raise TooLargeError(f"a rail is {height:g} mm high and cannot be cut between the rods into pieces that fit")
     found = []
     z = (t + 4.0, 2.0 * t + 4.0)
     for side in SIDES:
@@ -284,7 +311,7 @@ def base_pieces(lines: Lines, rooms: list[BaseRoom], standing: list[Standing], l
     for number, room in enumerate(rooms, 1):
         u = room.rect.u
         blocks = [b for b in [*rails, *(s.reach(t) for s in standing)] if spans_meet(b[0], u)]
-        pieces, at = _cut_base(room.rect, blocks, t, laser)
+        pieces, at = _cut_base(room.rect, blocks, lines, laser)
         for index, piece in enumerate(pieces):
             letter = "ABCDEFGHIJ"[index] if len(pieces) > 1 else ""
             name = f"BASE {number}{letter}" if len(rooms) > 1 or letter else "BASE"
@@ -294,16 +321,16 @@ def base_pieces(lines: Lines, rooms: list[BaseRoom], standing: list[Standing], l
     return found
 
 
-def _cut_base(rect: Rect, blocks: list[Box], t: float, laser: Laser) -> tuple[list[Span], float]:
+def _cut_base(rect: Rect, blocks: list[Box], lines: Lines, laser: Laser) -> tuple[list[Span], float]:
     """The pieces along y, and x of the fishplates' rear faces."""
-    u, v, half = rect.u, rect.v, FISHPLATE_MM / 2.0
+    u, v, t, half = rect.u, rect.v, lines.sheet_mm, lines.fishplate_mm / 2.0
     longest = _longest(u[1] - u[0], laser)
     middle = (u[0] + u[1] - t) / 2.0
     for at in (middle, middle - 8.0, middle + 8.0, u[0] + EDGE_MM, u[1] - EDGE_MM - t):
         forbidden = [(y[0] - 2.5, y[1] + 2.5) for _, y, _ in blocks]
         near = [b for b in blocks if spans_meet(b[0], (at - 2.0, at + t + 2.0))]
         forbidden += [(y[0] - half - 2.0, y[1] + half + 2.0) for _, y, _ in near]
-        pieces = cut_line(v, longest, forbidden)
+        pieces = cut_line(v, longest, forbidden, lines.fishplate_mm)
         if pieces is not None and u[0] + 2.0 <= at <= u[1] - t - 2.0:
             return pieces, at
     need = f"a base plate {u[1] - u[0]:.4g} mm wide and {v[1] - v[0]:.4g} long cannot be cut into pieces that fit"

@@ -14,6 +14,7 @@ from boomwright.plan.cradle import Held, held_conductors
 from boomwright.plan.notch import notch_apex_height_mm
 from boomwright.plan.seat import SeatPlan
 from boomwright.plan.sheet_plate import Span, Vee, free_spans
+from boomwright.plan.sheet_splice import FISHPLATES_MM
 from boomwright.plan.size import Size
 from boomwright.shop.profile import Shop
 
@@ -36,6 +37,10 @@ WEB_MM = 1.5
 MOST_STOP_MM, LEAST_STOP_MM = 14.0, 3.0
 MOST_SADDLE_SPAN_MM = 300.0
 SADDLE_FROM_END_MM, SADDLE_FROM_ROD_MM = 4.0, 20.0
+BESIDE_WINDOW_MM = 4.0
+FAR_MM = 20.0
+"""A saddle this far beyond the rails' ends gets its own sleeper, and the rails run on to it."""
+
 CHEEK_MM, LEAST_CHEEK_MM = 2.4, 0.8
 TIE_SLOT_MM = (2.0, 4.2)
 
@@ -92,6 +97,7 @@ class Lines:
     saddles: tuple[SaddleLine, ...]
     is_round: bool
     window_mm: Span | None
+    fishplate_mm: float = FISHPLATES_MM[0]
 
     def vee(self, held: Held) -> Vee:
         """The notch of a conductor, in the fixture's x and z."""
@@ -115,11 +121,14 @@ def lay_lines(design: Design, boom: Boom, shop: Shop, seat: SeatPlan) -> tuple[L
     ends = [(h.at_mm - h.radius_mm * ROOT_2, h.at_mm + h.radius_mm * ROOT_2) for h in held]
     rail_x = (min(e[0] for e in ends) - 6.0, max(e[1] for e in ends) + 6.0)
     places = _saddle_places(design, shop, seat)
+    rail_x = _reaching(rail_x, places)
     shaped = []
     for x in places:
         wide = _saddle((boom, shop, seat), height, x, math.inf)
         if wide.half_mm > rails[0] - 0.5:
-            if x[1] <= ends[0][0] - 3.0:
+            if rail_x[0] <= x[0] and x[1] <= rail_x[1]:
+                wide = _saddle((boom, shop, seat), height, x, rails[0] - 0.5)
+            elif x[1] <= ends[0][0] - 3.0:
                 rail_x = (max(rail_x[0], x[1] + 0.5), rail_x[1])
             elif x[0] >= max(e[1] for e in ends) + 3.0:
                 rail_x = (rail_x[0], min(rail_x[1], x[0] - 0.5))
@@ -143,6 +152,16 @@ def lay_lines(design: Design, boom: Boom, shop: Shop, seat: SeatPlan) -> tuple[L
     )
     sizes += [Size("sheet-cradle.stop.width_mm", width, "mm", "every stop alike: the closest conductors leave it")]
     return lines, sizes + rail_sizes
+
+
+def _reaching(rail_x_mm: Span, saddles: list[Span]) -> Span:
+    """The rails' ends, drawn out to saddles that stand far beyond the outermost notches."""
+    low, high = rail_x_mm
+    first, last = saddles[0], saddles[-1]
+    return (
+        first[0] - 8.0 if first[1] < low - FAR_MM else low,
+        last[1] + 8.0 if last[0] > high + FAR_MM else high,
+    )
 
 
 def _axis_height(
@@ -181,16 +200,18 @@ def _rails(shop: Shop, seat: SeatPlan, held: tuple[Held, ...]) -> tuple[Span, li
         origin = f"as far apart as {shortest.tag} allows, {TIP_MARGIN_MM:g} from its tips"
     if inner < least:
         inner, origin = least, "beside the boom: its half width + the relief from the adhesive"
-    hold = min(shortest.reach_mm, inner + t) - inner
-    for h in held:
-        # A straight rod may end on the rail, its stop right behind it; a bent one must not touch the rail's teeth.
-        most = h.tip_mm + shop.printer.slide_clearance_mm if h.reach_mm == h.tip_mm else h.reach_mm
-        if inner + t > most + 1e-9 or hold < LEAST_HOLD_MM:
-            room = max(most - least, 0.0)
-            raise LeftOutError(
-                f"{h.tag} leaves {room:.3g} mm between the adhesive's relief and its end, "
-                f"too little for a rail of {t:g} mm sheet"
-            )
+    if min(shortest.reach_mm, inner + t) - inner < LEAST_HOLD_MM:
+        room = min(t, max(shortest.reach_mm - inner, 0.0))
+        raise LeftOutError(f"{shortest.tag} would lie on {room:.3g} mm of rail, at least {LEAST_HOLD_MM:g} is needed")
+    # A straight rod may end on the rail, its stop right behind it; a bent one must not touch the rail's teeth.
+    slide = shop.printer.slide_clearance_mm
+    most, tag = min((h.tip_mm + slide if h.reach_mm == h.tip_mm else h.reach_mm, h.tag) for h in held)
+    if inner + t > most + 1e-9:
+        room = max(most - least, 0.0)
+        raise LeftOutError(
+            f"{tag} leaves {room:.3g} mm between the adhesive's relief and its end, "
+            f"too little for a rail of {t:g} mm sheet"
+        )
     apart = 2.0 * inner + t
     return (inner, inner + t), [Size("sheet-cradle.rails.apart_mm", apart, "mm", f"middle to middle: {origin}")]
 
@@ -243,6 +264,8 @@ def _saddle_places(design: Design, shop: Shop, seat: SeatPlan) -> list[Span]:
     relief, t, driven = shop.cradle.relief_mm, shop.laser.sheet_mm, design.driven
     kept = [(b.at_mm - b.half_x_mm - relief, b.at_mm + b.half_x_mm + relief) for b in seat.bond_lines]
     half = driven.outer_diameter_mm / 2.0 + relief
+    # The base has a window under what is fitted later: a saddle stands on the sheet beside it.
+    half += BESIDE_WINDOW_MM if _window(design, shop) else 0.0
     kept.append((driven.at_mm - half, driven.at_mm + half))
     free = free_spans((seat.start_mm, seat.end_mm), kept)
     first, last = free[0], free[-1]

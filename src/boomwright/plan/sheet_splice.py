@@ -8,25 +8,34 @@ from collections.abc import Callable, Sequence
 from boomwright.plan.sheet_plate import Span
 
 STEP_MM = 2.0
-FISHPLATE_MM = 60.0
-"""Length of a fishplate; half of it lies on either side of a joint."""
+FISHPLATES_MM = (60.0, 36.0)
+"""Lengths of a fishplate, the shorter where pieces are short; half of it lies on either side of a joint."""
 
-END_MM = FISHPLATE_MM / 2.0 + 4.0
-"""Least length of a plate's first and last piece: it takes half a fishplate."""
+SPARE_MM = 4.0
+"""How much longer a piece is than the fishplates on it."""
 
-BETWEEN_MM = FISHPLATE_MM + 4.0
-"""Least length of a piece between two joints."""
+
+def feet_of(fishplate_mm: float) -> tuple[Span, ...]:
+    """Where a fishplate's feet are along it, from its middle: two on either side, on a short one only one."""
+    half = fishplate_mm / 2.0
+    feet = [(6.0, 14.0), (18.0, 26.0)] if half >= 30.0 else [(4.0, half - 3.0)]
+    return tuple(sorted([*feet, *((-high, -low) for low, high in feet)]))
 
 
 def cut_line(
-    line: Span, longest_mm: float, forbidden: Sequence[Span], holds: Callable[[Span], bool] = lambda piece: True
+    line: Span,
+    longest_mm: float,
+    forbidden: Sequence[Span],
+    fishplate_mm: float,
+    holds: Callable[[Span], bool] = lambda piece: True,
 ) -> list[Span] | None:
     """The pieces of a line: as few as can be, then as even as can be.
 
-    line        its ends [mm]
-    longest_mm  most length of a piece
-    forbidden   where no joint may lie
-    holds       whether a piece of this extent can stand on its own
+    line          its ends [mm]
+    longest_mm    most length of a piece
+    forbidden     where no joint may lie
+    fishplate_mm  length of what bridges a joint
+    holds         whether a piece of this extent can stand on its own
 
     Returns the pieces in order, the line itself where it is short enough; None where no such cuts exist.
     """
@@ -43,7 +52,8 @@ def cut_line(
             length = places[j] - places[i]
             if length > longest_mm + 1e-9:
                 break
-            least = END_MM if i == 0 or j == len(places) - 1 else BETWEEN_MM
+            bridges = 0.5 if i == 0 or j == len(places) - 1 else 1.0
+            least = bridges * fishplate_mm + SPARE_MM
             if best[i][0] >= 0 and length >= least and holds((places[i], places[j])):
                 choices.append((best[i][0] + 1, best[i][1] + length**2, i))
         best.append(min(choices, default=(-1, 0.0, -1)))
