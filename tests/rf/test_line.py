@@ -4,6 +4,7 @@ import numpy as np
 import pytest
 import skrf
 
+from boomwright.errors import InputFault
 from boomwright.rf.feed import vswr
 from boomwright.rf.line import (
     Line,
@@ -101,6 +102,17 @@ def test_off_its_frequency_a_match_is_what_the_cascade_says():
 def test_a_series_section_that_cannot_reach_is_not_offered():
     assert series_sections(500.0, HZ, PE_50, PE_75) == ()
     assert series_sections(50.0, HZ, PE_50, PE_75) == shunt_stubs(50.0, HZ, PE_50, "open") == ()
+
+
+@pytest.mark.parametrize("load_ohm", [0.0 + 20.0j, -5.0 + 1.0j, complex(float("nan"), 1.0)])
+def test_a_load_that_takes_no_power_is_refused(load_ohm):
+    for match in (
+        lambda: series_sections(load_ohm, HZ, PE_50, PE_75),
+        lambda: shunt_stubs(load_ohm, HZ, PE_50, "short"),
+        lambda: quarter_wave_sections(load_ohm, HZ, PE_50),
+    ):
+        with pytest.raises(InputFault, match="takes no power\n  fix: give an impedance with a resistance above 0"):
+            match()
 
 
 def task(load_ohm, cut_m=0.5e-3, slope_ohm=400.0, vswr_most=1.5):

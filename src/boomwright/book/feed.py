@@ -6,7 +6,7 @@ from boomwright.book.content import Block, Chapter, Facts, Heading, Paragraph, S
 from boomwright.book.run import COAX_CUT_MM, Run
 from boomwright.book.words import figure, mhz, mm, ohms, span
 from boomwright.data.tables import Cable, cables
-from boomwright.rf.choke import Choke
+from boomwright.rf.choke import Choke, divides_by_four
 from boomwright.rf.line import Section, wavelength_in_line_m
 from boomwright.rf.matching import Rating
 from boomwright.units import MM_PER_M
@@ -21,7 +21,11 @@ def chapter(run: Run) -> Chapter:
             "again. "
             "Whatever cable you take: the element is symmetric and the cable is not, so a choke belongs at the feed."
         )
-        return Chapter("The feed", "feed", (*blocks, Paragraph(words)))
+        blocks.append(Paragraph(words))
+        if divides_by_four(run.feed_ohm, run.design.feed.system_ohm):
+            high = f"The feed resistance of {figure(run.feed_ohm.real, 0)} ohm"
+            blocks.append(Paragraph(f"{high} asks for a half-wave balun, which divides it."))
+        return Chapter("The feed", "feed", tuple(blocks))
     if run.cable.impedance_ohm != run.design.feed.system_ohm:
         blocks.append(Paragraph(_two_systems(run, run.cable)))
     blocks += [Heading("Keep the current off the cable's outside"), *_choke_blocks(run.choke)]

@@ -100,7 +100,7 @@ def _groove_steps(run: Run) -> list[Step]:
         steps.append(
             Step(
                 f"Lay {listed(run.held_tags)} back in the cradle by their tags.",
-                "Every tag on a rod is the tag engraved beside it.",
+                "Each came from the place in the rack whose tag is engraved beside its notch.",
                 Picture.CRADLE_RODS,
             )
         )

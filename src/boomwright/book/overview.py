@@ -5,6 +5,7 @@ from __future__ import annotations
 from boomwright.book.content import Block, Chapter, Facts, Figure, Heading, Paragraph, Picture, Table
 from boomwright.book.run import Run
 from boomwright.book.words import counted, figure, listed, mhz, mm, ohms, span
+from boomwright.rf.feed import vswr
 
 FORMS = {"straight": "straight", "folded": "folded", "loop": "loop"}
 
@@ -77,6 +78,7 @@ def _band_table(run: Run) -> Table:
         ("Gain [dBi]", span(found.gain_dbi[inside].tolist()), wished[0]),
         ("Front-to-back [dB]", span(found.front_to_back_db[inside].tolist(), 1), wished[1]),
         ("VSWR at the feed gap", span(found.vswr[inside].tolist()), wished[2]),
+        *_behind_balun(run, inside),
         ("Efficiency [%]", span((100.0 * found.efficiency[inside]).tolist(), 1), "-"),
     ]
     beams = (("in the plane of the rods", found.beamwidth_e_deg), ("across the rods", found.beamwidth_h_deg))
@@ -86,14 +88,22 @@ def _band_table(run: Run) -> Table:
     return Table(("Figure", "Predicted over the band", "Spec"), tuple(rows), "Predicted figures against the spec.")
 
 
+def _behind_balun(run: Run, inside: list[int]) -> list[tuple[str, str, str]]:
+    """A row for the VSWR that the cable sees, where a balun divides the impedance."""
+    if run.choke is None or run.divides == 1.0:
+        return []
+    ratios = [vswr(complex(run.cable_ohm[i]), run.design.feed.system_ohm) for i in inside]
+    return [(f"VSWR behind the {run.choke.kind}", span(ratios), "-")]
+
+
 def _verdict(run: Run) -> str:
     if run.design.spec is None:
         return "The design states no spec: the figures above are what to expect."
     if not run.prediction.shortfalls:
         return "The prediction meets the spec over the whole band."
-    return (
-        "The prediction does not meet the spec: " + "; ".join(str(short) for short in run.prediction.shortfalls) + "."
-    )
+    words = "; ".join(str(short) for short in run.prediction.shortfalls)
+    balun = " The spec is judged at the gap; the cable sees what the balun makes of it." if run.divides != 1.0 else ""
+    return f"The prediction does not meet the spec: {words}.{balun}"
 
 
 def _doubts(run: Run) -> tuple[str, ...]:

@@ -17,8 +17,8 @@ def chapter(run: Run) -> Chapter:
         return Chapter("Cutting the rods", "rods", (Paragraph(words),))
     blocks: list[Block] = [
         Paragraph(
-            "Length decides more than anything else here. Cut a little long, dress to length, check, and mark each rod "
-            "with its tag before you lay it down."
+            "Length decides more than anything else here. Cut a little long, dress to length, check, and keep each rod "
+            "under its tag from then on."
         ),
         Figure(Picture.ROD_TABLE, "All rods with their lengths and places, from one datum."),
         Steps(tuple(_steps(run))),
@@ -46,30 +46,37 @@ def _steps(run: Run) -> list[Step]:
             caution,
         )
     ]
-    if run.has("cut-block"):
-        slot = run.size("cut-block.slot_mm")
-        words = f"Push the bar against the stop of the cut block and saw in the slot of its length, {mm(slot)} wide"
-        steps.append(
-            Step(f"{words}; keep the blade on the slot's wall toward the stop.", "The cut is square to the rod.")
-        )
-    else:
-        why = run.why_not("cut-block")
-        words = f"Saw in a mitre box or vice: there is no cut block ({why})."
-        steps.append(Step(words, "A square held to the end shows no light."))
-    steps.append(
-        Step(
-            "Dress both ends square with a file and break the edge lightly.",
-            "The end is flat, and a fingernail does not catch on its edge.",
-        )
-    )
+    steps += _length_steps(run)
     steps.append(_gauge_step(run))
     steps.append(
         Step(
-            "Write the tag on a strip of tape round each rod's middle.",
-            f"You count {len(run.design.rods)} rods, each with its tag: {tags}.",
+            "Put each rod into a rack or bag marked with its tag.",
+            f"You count {len(run.design.rods)} rods, each under its tag: {tags}.",
         )
     )
     return steps
+
+
+def _length_steps(run: Run) -> list[Step]:
+    """Sawing to length in the cut block, or filing to it."""
+    if not run.has("cut-block"):
+        why = run.why_not("cut-block")
+        return [
+            Step(
+                f"Dress both ends square with a file until the length is right; there is no cut block ({why}).",
+                "A square held to the end shows no light.",
+            ),
+            Step("Break all edges lightly.", "A fingernail does not catch."),
+        ]
+    slot = run.size("cut-block.slot_mm")
+    return [
+        Step(
+            "Dress one end square, push it against the stop of the cut block and saw in the slot of the rod's length, "
+            f"{mm(slot)} wide; keep the blade on the slot's wall toward the stop.",
+            "A square held to both ends shows no light.",
+        ),
+        Step("Break all edges lightly.", "A fingernail does not catch."),
+    ]
 
 
 def _coated(run: Run) -> bool:

@@ -98,8 +98,10 @@ def series_sections(load_ohm: complex, frequency_hz: float, cable: Line, other: 
     With n = other / cable, z = r + jx = load / cable: tan of the section is
     B = +-sqrt(((r - 1)^2 + x^2) / (r (n - 1/n)^2 - (r - 1)^2 - x^2)), of the cable before it
     A = ((n - r/n) B + x) / (r + x n B - 1). Two matches, the shorter first, or none where the root is not real.
-    [Regier1971]; with z = n it is Bramham's pair of equal sections [Bramham1961].
+    Raises InputFault for a load that takes no power. [Regier1971]; with z = n it is Bramham's pair of equal sections
+    [Bramham1961].
     """
+    _refuse_no_load(load_ohm)
     z, n = load_ohm / cable.impedance_ohm, other.impedance_ohm / cable.impedance_ohm
     r, x = z.real, z.imag
     off = (r - 1.0) ** 2 + x**2
@@ -123,8 +125,10 @@ def shunt_stubs(load_ohm: complex, frequency_hz: float, cable: Line, ending: End
     cable         of the feed line and of the stub
     ending        open or short
 
-    Two matches, the one with less line first; none for a load that is matched already. [Pozar2012] sec. 5.2.
+    Two matches, the one with less line first; none for a load that is matched already. Raises InputFault for a load
+    that takes no power. [Pozar2012] sec. 5.2.
     """
+    _refuse_no_load(load_ohm)
     z = load_ohm / cable.impedance_ohm
     r, x = z.real, z.imag
     if abs(z - 1.0) < NO_LENGTH:
@@ -153,8 +157,10 @@ def quarter_wave_sections(load_ohm: complex, frequency_hz: float, cable: Line) -
     cable         the line that is to run matched; the section has its velocity factor
 
     The section's impedance is the geometric mean of the cable's and the real one. Two matches, the one with less line
-    first: from the voltage's maximum and from its minimum. [Pozar2012] sec. 5.4.
+    first: from the voltage's maximum and from its minimum. Raises InputFault for a load that takes no power.
+    [Pozar2012] sec. 5.4.
     """
+    _refuse_no_load(load_ohm)
     gamma = reflection(load_ohm, cable.impedance_ohm)
     if abs(gamma) < NO_LENGTH:
         return ()
@@ -167,6 +173,12 @@ def quarter_wave_sections(load_ohm: complex, frequency_hz: float, cable: Line) -
         sections = _sections(frequency_hz, (("series", cable, share), ("series", section, 0.25)))
         found.append(Match("quarter-wave section", sections))
     return tuple(sorted(found, key=lambda match: match.length_m))
+
+
+def _refuse_no_load(load_ohm: complex) -> None:
+    if not (math.isfinite(abs(load_ohm)) and load_ohm.real > 0.0):
+        found = f"{load_ohm:.3g} ohm takes no power"
+        raise InputFault([Fault("load_ohm", found, "give an impedance with a resistance above 0")])
 
 
 def _sections(frequency_hz: float, parts: tuple[tuple[Role, Line, float], ...]) -> tuple[Section, ...]:
