@@ -98,7 +98,8 @@ def test_what_is_no_wall(measured):
         [prism_along_y([(at, 5), (at + 6, 11), (at - 6, 11)], (-1, 21)) for at in (10.0, 20.0)],
     )
     engraved = cut(box((0, 30), (0, 20), (0, 5)), [box((x, x + 0.5), (5, 15), (4.4, 6)) for x in (5.0, 6.0, 7.0, 8.0)])
-    for shape in (box((0, 30), (0, 20), (0, 5)), ridge, engraved):
+    railed = unite(engraved, [box((x, x + 3), (0, 20), (4, 9)) for x in (0.0, 27.0)])
+    for shape in (box((0, 30), (0, 20), (0, 5)), ridge, engraved, railed):
         assert measured(shape, "thinnest_wall_mm", up_to_mm=1.2) == 1.2
     deep = cut(box((0, 30), (0, 20), (0, 5)), [box((x, x + 0.5), (5, 15), (3.0, 6)) for x in (5.0, 6.0)])
     assert measured(deep, "thinnest_wall_mm", up_to_mm=1.2) == pytest.approx(0.5, abs=0.05)
@@ -107,8 +108,9 @@ def test_what_is_no_wall(measured):
 def test_an_acute_corner_is_no_wall_and_a_long_spike_is():
     import shapely
 
-    assert len(walls.thin_places(shapely.Polygon([(0, 0), (20, 0), (20, 15)]), 1.2)) == 0
-    assert len(walls.thin_places(shapely.Polygon([(0, 0), (20, 0), (20, 8)]), 1.2)) == 1
+    for height, count in ((15, 0), (8, 1)):
+        corner = shapely.Polygon([(0, 0), (20, 0), (20, height)])
+        assert len(walls.thin_places(walls.Section(corner, corner), 1.2)) == count
 
 
 def chamfered(body, chamfer_mm):

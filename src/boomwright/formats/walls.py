@@ -13,6 +13,7 @@ than that. Not counted, because no wall:
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 from itertools import pairwise
 from typing import TYPE_CHECKING, Any
 
@@ -48,6 +49,14 @@ TOUCH_MM = 0.02
 QUARTER_SEGMENTS = 5
 
 
+@dataclass(frozen=True)
+class Section:
+    """The material at a level, and the same joined with what lies a little below it: shapely areas."""
+
+    here: Any
+    joined: Any
+
+
 def measure_thinnest_wall(reading: MeshReading, arguments: Mapping[str, Any], also: Sequence[Any]) -> float:
     """Thinnest wall in any horizontal section [mm], at most `up_to_mm`, which nothing thinner means.
 
@@ -56,10 +65,10 @@ def measure_thinnest_wall(reading: MeshReading, arguments: Mapping[str, Any], al
     """
     thinnest, growth = float(arguments["up_to_mm"]), float(arguments.get("growth_mm", 0.0))
     for level in _levels(reading):
-        area = _section(reading, level, growth)
-        thinnest = min(thinnest, _between_rings_mm(area))
-        if _is_thin(area, thinnest):
-            thinnest = _bisected_mm(area, thinnest)
+        section = _section(reading, level, growth)
+        thinnest = min(thinnest, _between_rings_mm(section, thinnest))
+        if _is_thin(section, thinnest):
+            thinnest = _bisected_mm(section, thinnest)
     return thinnest
 
 
@@ -79,37 +88,42 @@ def _levels(reading: MeshReading) -> list[float]:
     return ends
 
 
-def _section(reading: MeshReading, level_mm: float, growth_mm: float) -> Any:
-    """The material at this level or a little below it, as it comes out of the printer."""
-    area = section_of(reading, level_mm)
-    if level_mm - LOW_MM > reading.heights[0] + FOOT_MM:
-        area = area.union(section_of(reading, level_mm - LOW_MM))
-    if growth_mm:
-        area = area.buffer(growth_mm, join_style="mitre")
-    return area.simplify(SIMPLER_MM)
+def _section(reading: MeshReading, level_mm: float, growth_mm: float) -> Section:
+    """The section at this level as it comes out of the printer."""
+    here = section_of(reading, level_mm).buffer(growth_mm, join_style="mitre")
+    if level_mm - LOW_MM <= reading.heights[0] + FOOT_MM:
+        here = here.simplify(SIMPLER_MM)
+        return Section(here, here)
+    below = section_of(reading, level_mm - LOW_MM).buffer(growth_mm, join_style="mitre")
+    return Section(here, here.union(below).simplify(SIMPLER_MM))
 
 
-def _between_rings_mm(area: Any) -> float:
-    """Least distance between two holes of an area, or a hole and its rim [mm]; infinite without holes."""
+def _between_rings_mm(section: Section, least_mm: float) -> float:
+    """Distance between two holes, or a hole and its rim, where it is less than this [mm]; else this."""
     import shapely
 
-    least = np.inf
-    for part in shapely.get_parts(area):
+    for part in shapely.get_parts(section.joined):
         rings = np.array([part.exterior, *part.interiors])
         one, other = np.triu_indices(len(rings), 1)
-        least = min(least, float(shapely.distance(rings[one], rings[other]).min(initial=np.inf)))
-    return least
+        apart = shapely.distance(rings[one], rings[other])
+        for index in np.flatnonzero(apart < least_mm):
+            web = shapely.shortest_line(rings[one[index]], rings[other[index]])
+            if section.here.intersects(web.interpolate(0.5, normalized=True)):
+                least_mm = min(least_mm, float(apart[index]))
+    return least_mm
 
 
-def thin_places(area: Any, wall_mm: float) -> Any:
+def thin_places(section: Section, wall_mm: float) -> Any:
     """The parts of a section that are walls thinner than this, as an array of shapely areas."""
     import shapely
 
-    radius = wall_mm / 2.0 - STEP_MM / 4.0
+    area, radius = section.joined, wall_mm / 2.0 - STEP_MM / 4.0
     core = area.buffer(-radius, quad_segs=QUARTER_SEGMENTS)
     opened = core.buffer(radius + TOUCH_MM, quad_segs=QUARTER_SEGMENTS)
     rest = shapely.get_parts(area.difference(opened))
     rest = rest[shapely.area(rest) > NOTHING_MM2]
+    if len(rest) > 0:
+        rest = rest[shapely.area(shapely.intersection(rest, section.here)) > NOTHING_MM2]
     if len(rest) == 0 or core.is_empty:
         return rest
     sides = shapely.intersection(shapely.buffer(rest, TOUCH_MM / 10.0, quad_segs=1), opened.intersection(area))
@@ -126,16 +140,16 @@ def _reaches(pieces: Any, opened: Any) -> Any:
     return reach
 
 
-def _is_thin(area: Any, wall_mm: float) -> bool:
-    return len(thin_places(area, wall_mm)) > 0
+def _is_thin(section: Section, wall_mm: float) -> bool:
+    return len(thin_places(section, wall_mm)) > 0
 
 
-def _bisected_mm(area: Any, thick_mm: float) -> float:
+def _bisected_mm(section: Section, thick_mm: float) -> float:
     """The thinnest wall of a section that has one thinner than this [mm]."""
     thin = 0.0
     while thick_mm - thin > STEP_MM:
         middle = (thin + thick_mm) / 2.0
-        if _is_thin(area, middle):
+        if _is_thin(section, middle):
             thick_mm = middle
         else:
             thin = middle
