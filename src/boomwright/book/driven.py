@@ -175,14 +175,27 @@ def _fit_steps(run: Run) -> list[Step]:
                 picture,
             )
         ]
+    return _upright_steps(run, picture)
+
+
+def _upright_steps(run: Run, picture: Picture | None) -> list[Step]:
+    driven, name = run.design.driven, run.design.adhesive.name
+    caution = Caution(f"Vapours of {name} again: open window, gloves, glasses.", Topic.ADHESIVE)
     return [
         Step(
-            f"Glue the fed conductor into its groove at {mm(driven.at_mm)}, the second conductor "
-            f"{mm(driven.spacing_mm or 0.0)} "
-            "above it, and hold it upright until cured.",
-            "A square on the boom touches the bend at both ends, and the gap lies over the pocket.",
+            f"Roughen and clean groove and wire, put a bead of {name} in the groove at {mm(driven.at_mm)} but not "
+            "in its "
+            "pocket, and press the fed conductor in.",
+            "A thin line of adhesive shows at both sides, and the pocket is free of it.",
             picture,
-        )
+            caution,
+        ),
+        Step(
+            f"Set the second conductor {mm(driven.spacing_mm or 0.0)} above the fed one, square to the boom, and "
+            "hold it so "
+            "until the adhesive has cured as its own data sheet says.",
+            "A square on the boom touches the bend at both ends, and the gap lies over the pocket.",
+        ),
     ]
 
 

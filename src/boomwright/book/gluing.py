@@ -10,8 +10,9 @@ from boomwright.book.words import counted, figure, listed, mm
 
 def chapter(run: Run) -> Chapter:
     """From loose parts to rods that sit where they belong for good."""
-    if not run.is_glued:
-        words = "Nothing is glued to this boom: the driven element is carried by its resin block."
+    if not run.first_glued:
+        words = "No rod is glued to this boom: "
+        words += "see the next chapter for the driven element." if run.is_glued else "resin carries the driven element."
         return Chapter("Gluing the rods", "gluing", (Paragraph(words),))
     blocks: list[Block] = [Paragraph(_intro(run)), Steps(tuple(_steps(run)))]
     return Chapter("Gluing the rods", "gluing", tuple(blocks))
@@ -92,8 +93,10 @@ def _clean_step(run: Run) -> Step:
 
 
 def _groove_steps(run: Run) -> list[Step]:
-    seats = len(run.plan.seat.grooves)
-    each = adhesive_ml(run.plan) / seats
+    tags = run.first_glued
+    each = adhesive_ml(run.plan, tags) / len(tags)
+    later = [groove.tag for groove in run.plan.seat.grooves if groove.tag not in tags]
+    empty = f" Leave the groove of {listed(later)} empty: it is glued later." if later else ""
     gap, relief = run.plan.wished_seat.glue_gap_mm, run.shop.cradle.relief_mm
     steps = []
     if run.has(*CRADLES):
@@ -107,8 +110,8 @@ def _groove_steps(run: Run) -> list[Step]:
     steps.append(
         Step(
             f"Mix the adhesive as its data sheet says. Turn the boom's grooves up and put a bead of about "
-            f"{figure(1000.0 * each, 0)} cubic millimetres in the bottom of each of the {seats} grooves, none within "
-            f"{mm(relief)} of the boom's faces.",
+            f"{figure(1000.0 * each, 0)} cubic millimetres in the bottom of the grooves of {listed(tags)}, none within "
+            f"{mm(relief)} of the boom's faces.{empty}",
             "Each bead stays where it is when you tilt the boom. If it creeps, it is the wrong adhesive for this.",
         )
     )

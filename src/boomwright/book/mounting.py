@@ -74,6 +74,12 @@ def _wind_table(run: Run) -> Table:
     return Table(head, tuple(rows), "Wind area and force.")
 
 
+def _cap_words(run: Run) -> tuple[str, str]:
+    if not run.tips:
+        return "File any sharp end of the wire round.", "A fingertip along the element finds no edge."
+    return "Put a cap on every rod end.", f"{run.tips} caps are on."
+
+
 def _steps(run: Run) -> list[Step]:
     low, high = clamp_room_mm(run.plan, run.mounting)
     rear = run.mounting.balance_mm - run.plan.seat.start_mm
@@ -106,7 +112,7 @@ def _steps(run: Run) -> list[Step]:
         Topic.STRUCTURE,
     )
     return [
-        Step("Put a cap on every rod end.", f"{2 * len(run.design.rods)} caps are on.", None, caps),
+        Step(*_cap_words(run), None, caps),
         Step(
             f"Balance the boom on a finger, {mm(rear, 1)} from its rear end, cable tied on.",
             f"It lies level. Clamp there, on the free boom between {mm(low, 1)} and {mm(high, 1)} of the datum; "

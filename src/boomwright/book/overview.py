@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from boomwright.book.content import Block, Chapter, Facts, Figure, Heading, Paragraph, Picture, Table
 from boomwright.book.run import Run
-from boomwright.book.words import counted, figure, listed, mhz, mm, ohms, span
+from boomwright.book.words import counted, figure, listed, mhz, mm, ohms, span, with_article
 from boomwright.rf.feed import vswr
 
 FORMS = {"straight": "straight", "folded": "folded", "loop": "loop"}
@@ -37,12 +37,12 @@ def _sentence(run: Run) -> str:
     directors = sum(1 for rod in design.rods if rod.role == "director")
     with_reflector = any(rod.role == "reflector" for rod in design.rods)
     parts = ["a reflector"] if with_reflector else []
-    parts.append(f"a {_form(run)} driven element")
+    parts.append(with_article(f"{_form(run)} driven element"))
     if directors:
         parts.append(counted(directors, "director"))
     elements = f"{name} is a beam for {band.low_mhz:.7g} to {mhz(band.high_mhz)}, made of {listed(parts)}"
     boom = run.plan.boom
-    return f"{elements} on a {mm(boom.width_mm)} {boom.section} {boom.material} boom."
+    return f"{elements} on {with_article(f'{mm(boom.width_mm)} {boom.section} {boom.material} boom')}."
 
 
 def _form(run: Run) -> str:

@@ -110,6 +110,17 @@ class Run:
         return bool(self.plan.seat.bond_lines)
 
     @property
+    def first_glued(self) -> tuple[str, ...]:
+        """Tags of the seats that are glued with the rods; an upright driven element follows once they have cured."""
+        seat, held = self.plan.seat, self.held_tags
+        return tuple(bond.tag for bond in seat.bond_lines if bond.tag in held)
+
+    @property
+    def tips(self) -> int:
+        """Number of free conductor ends: two a rod, two of a straight driven element."""
+        return 2 * len(self.design.rods) + (2 if self.design.driven.form == "straight" else 0)
+
+    @property
     def has_metal_boom(self) -> bool:
         """Whether the boom conducts."""
         name = self.plan.boom.material

@@ -6,7 +6,7 @@ from dataclasses import replace
 
 from boomwright.book.content import Block, Chapter, Heading, Paragraph, Table
 from boomwright.book.run import Run
-from boomwright.book.words import figure, listed, mm, span
+from boomwright.book.words import figure, listed, mm, rough, span
 from boomwright.data.tables import general_tolerance_mm
 from boomwright.design.centreline import developed_length_mm
 from boomwright.errors import CatalogueError
@@ -60,7 +60,7 @@ def _purchases(run: Run) -> Table:
     if run.cable is not None:
         rows.append(("Coax", run.cable.name, "as long as the way to the radio needs"))
     if run.is_glued:
-        rows.append(("Adhesive", design.adhesive.name, f"about {figure(adhesive_ml(plan))} ml for all joints"))
+        rows.append(("Adhesive", design.adhesive.name, f"about {rough(adhesive_ml(plan), 1)} ml for all joints"))
     if run.has_resin:
         volume = run.size("mould.resin_volume_ml")
         words = f"{figure(volume)} ml in the mould; mix {figure(LEFT_IN_THE_CUP * volume, 1)} ml"
@@ -69,17 +69,23 @@ def _purchases(run: Run) -> Table:
     if sleeves := [hole for hole in plan.seat.holes if hole.sleeve_outer_mm > 0.0]:
         size = f"{mm(sleeves[0].sleeve_outer_mm)} outside, {mm(sleeves[0].sleeve_inner_mm)} inside"
         rows.append(("Sleeves", size, f"{len(sleeves)} of {mm(boom.width_mm)}"))
-    rows.append(("Caps", "soft caps for rod ends", f"{2 * len(design.rods)}"))
+    if run.tips:
+        rows.append(("Caps", "soft caps for rod ends", str(run.tips)))
     return Table(("What", "Which", "How much"), tuple(rows), "What goes into the antenna.")
 
 
-def adhesive_ml(plan: Plan) -> float:
-    """Adhesive that fills all seats [ml]: each seat's hollow in the boom less its rod; pockets are the resin's."""
+def adhesive_ml(plan: Plan, tags: tuple[str, ...] | None = None) -> float:
+    """Adhesive that fills all seats [ml]: each seat's hollow in the boom less its rod; pockets are the resin's.
+
+    tags   of the seats that count; None = all
+    """
     bare = {rod.tag: rod.outer_diameter_mm for rod in plan.design.rods}
     total = 0.0
     for groove in plan.seat.grooves:
         diameter = bare.get(groove.tag, plan.design.driven.outer_diameter_mm)
         rod = Hole(groove.tag, groove.at_mm, diameter)
+        if tags is not None and groove.tag not in tags:
+            continue
         total += max(groove_mm3(replace(groove, pocket=None), plan) - hole_mm3(rod, plan), 0.0)
     for hole in plan.seat.holes:
         inner = hole.sleeve_outer_mm or bare[hole.tag]

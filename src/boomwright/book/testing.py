@@ -18,6 +18,9 @@ from boomwright.rf.sensitivity import Dimension
 
 MOST_ROWS = 11
 MOST_EFFECTS = 8
+LEAST_TOLD_DB = 3.0
+"""A smaller difference drowns in what the ground reflects (common practice)."""
+
 DIMENSION_WORDS: dict[Dimension, str] = {
     "length_m": "length",
     "at_m": "place",
@@ -72,11 +75,16 @@ def _steps(run: Run, found: tuple[Reading, ...]) -> list[Step]:
         ),
         Step(
             "In the open, turn the antenna to a far weak source and away from it.",
-            "The difference comes near "
-            f"{figure(float(run.prediction.sweep.front_to_back_db[run.prediction.middle]), 0)} dB; "
-            "reflections around you can hide half of it.",
+            _back_words(run),
         ),
     ]
+
+
+def _back_words(run: Run) -> str:
+    level_db = float(run.prediction.sweep.front_to_back_db[run.prediction.middle])
+    if level_db < LEAST_TOLD_DB:
+        return "Front and back are predicted nearly alike: the difference does not tell much."
+    return f"The difference comes near {figure(level_db, 0)} dB; reflections around you can hide half of it."
 
 
 def table_indices(count: int, keep: tuple[int, ...], most: int = MOST_ROWS) -> tuple[int, ...]:

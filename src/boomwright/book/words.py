@@ -9,6 +9,9 @@ LEAST_ROUGH = 1e-4
 """A change smaller than this of anything in the book is none."""
 
 
+SPOKEN_WITH_VOWEL = tuple(str(number) for number in (11, 18))
+
+
 def figure(value: float, decimals: int = 2) -> str:
     """A number with at most so many decimals, without zeros at its end."""
     text = f"{value:.{decimals}f}"
@@ -51,6 +54,13 @@ def listed(words: Iterable[str], last: str = "and") -> str:
     if len(found) < 2:
         return "".join(found)
     return f"{', '.join(found[:-1])} {last} {found[-1]}"
+
+
+def with_article(words: str) -> str:
+    """Words with the article that is spoken before them: a beam, an upright one, an 8 mm rod."""
+    number = words.split(".", maxsplit=1)[0].split(" ", maxsplit=1)[0]
+    spoken_vowel = words[:1].lower() in "aeiou" or number.startswith("8") or number in SPOKEN_WITH_VOWEL
+    return f"{'an' if spoken_vowel else 'a'} {words}"
 
 
 def counted(count: int, one: str, many: str | None = None) -> str:
