@@ -30,12 +30,14 @@ from boomwright.plan.sheet_frame import (
 from boomwright.plan.sheet_lines import TIE_SLOT_MM, LeftOutError, Lines, SaddleLine, lay_lines
 from boomwright.plan.sheet_plate import Plate, Rect, Standing, across, along_x, with_slots
 from boomwright.plan.sheet_splice import FISHPLATES_MM
-from boomwright.plan.sheet_words import with_words
+from boomwright.plan.sheet_words import Wish, with_words
 from boomwright.plan.size import Size
 from boomwright.shop.nesting import Place, fits_sheet, nest
 from boomwright.shop.profile import Shop
 
 STOP_OVER_AXIS_MM = 2.0
+TAG_REACH_MM = 9.0
+"""A tag farther from its notch or slot would mislead."""
 
 
 @dataclass(frozen=True)
@@ -134,7 +136,18 @@ def _standing(design: Design, lines: Lines, shop: Shop) -> list[Standing]:
     every = [*base, *rails, *crossing, *saddles, *props, *stops]
     all_feet = [foot for one in every for foot in one.feet(lines.sheet_mm)]
     slotted = [with_slots(one, all_feet, lines.sheet_mm, laser.fit_mm) for one in every]
-    return [replace(one, plate=_worded(design, lines, one.plate)) for one in slotted]
+    seats = _seats([*crossing, *saddles, *props], lines.sheet_mm)
+    return [replace(one, plate=_worded(design, lines, seats, one.plate)) for one in slotted]
+
+
+def _seats(standing: list[Standing], sheet_mm: float) -> list[Wish]:
+    """What a base says at the slots: the name of the plate that goes there, and where."""
+    found = []
+    for one in standing:
+        x, y, _ = one.reach(sheet_mm)
+        share = 0.75 if one.plate.kind == "spreader" and y[0] < 0.0 < y[1] else 0.5
+        found.append(Wish(one.plate.name, sum(x) / 2.0, y[0] + share * (y[1] - y[0]), TAG_REACH_MM))
+    return found
 
 
 def _saddle(lines: Lines, saddle: SaddleLine) -> Plate:
@@ -185,19 +198,23 @@ def _stops(lines: Lines) -> list[Standing]:
     return found
 
 
-def _worded(design: Design, lines: Lines, plate: Plate) -> Plate:
+def _worded(design: Design, lines: Lines, seats: list[Wish], plate: Plate) -> Plate:
     """Tags beside notches and stops, FORWARD with an arrow, the design's name, and what the plate is."""
     u, v = ((a + b) / 2.0 for a, b in (plate.body.u, plate.body.v))
-    wishes: list[tuple[str, float, float]] = []
     if plate.kind == "rail":
-        wishes += [(vee.tag, vee.at_mm, vee.apex_mm - 3.0) for vee in plate.vees]
-        wishes += [(f"{plate.name} FORWARD →", u, v), (design.name, u + 60.0, v)]
-    elif plate.kind == "base":
-        for stop in lines.stops:
-            if plate.body.u[0] <= stop.at_mm <= plate.body.u[1]:
-                y = stop.inner_mm - EDGE_MM
-                wishes += [(stop.tag, stop.at_mm, at) for at in (y, -y) if plate.body.v[0] < at < plate.body.v[1]]
-        wishes += [("FORWARD →", u, v), (plate.name, u, v - 6.0), (design.name, u, v + 6.0)]
-    else:
-        wishes.append((plate.name, u, v))
+        wishes = [Wish(vee.tag, vee.at_mm, vee.apex_mm - 3.0, TAG_REACH_MM) for vee in plate.vees]
+        wishes += [Wish(f"{plate.name} FORWARD →", u, v), Wish(design.name, u + 60.0, v)]
+        return with_words(plate, wishes)
+    if plate.kind != "base":
+        return with_words(plate, [Wish(plate.name, u, v)])
+    wishes = []
+    for stop in lines.stops:
+        y = stop.inner_mm - EDGE_MM
+        wishes += [Wish(stop.tag, stop.at_mm, at, TAG_REACH_MM) for at in (y, -y) if _on(plate, stop.at_mm, at)]
+    wishes += [seat for seat in seats if _on(plate, seat.u_mm, seat.v_mm)]
+    wishes += [Wish("FORWARD →", u, v), Wish(plate.name, u, v - 6.0), Wish(design.name, u, v + 6.0)]
     return with_words(plate, wishes)
+
+
+def _on(plate: Plate, u_mm: float, v_mm: float) -> bool:
+    return plate.body.holds(Rect((u_mm, u_mm), (v_mm, v_mm)))

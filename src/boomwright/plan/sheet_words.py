@@ -2,19 +2,38 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Sequence
 from dataclasses import replace
+from typing import NamedTuple
 
 from boomwright.data.lettering import text_width_mm
 from boomwright.plan.sheet_plate import Plate, Rect, Words
 
 STEP_MM = 2.0
-CLEAR_MM = 0.8
+REACH_STEPS = 30
+"""How far from its wished place a text is looked for, in steps."""
+
+CLEAR_MM, BETWEEN_MM = 0.8, 1.6
+"""Round a text, and between two along a line."""
+
+NEAR_MM = 4.0
+"""A tag that finds a place this near is not made smaller to come nearer still; other words never are."""
+
 HEIGHTS_MM = (3.0, 2.4, 1.8)
 
 
-def with_words(plate: Plate, wishes: Sequence[tuple[str, float, float]]) -> Plate:
-    """The plate with every text, as near to its wished middle (u, v) as there is room; what finds none is left off."""
+class Wish(NamedTuple):
+    """A text, where its middle should be (u, v), and how far from there it still says the right thing [mm]."""
+
+    text: str
+    u_mm: float
+    v_mm: float
+    farthest_mm: float = math.inf
+
+
+def with_words(plate: Plate, wishes: Sequence[Wish]) -> Plate:
+    """The plate with every text, as near to its wished place as there is room; what finds none is left off."""
     taken = [r.grown(CLEAR_MM) for r in (*plate.slots, *plate.windows)]
     top = plate.body.v[1]
     taken += [
@@ -25,11 +44,12 @@ def with_words(plate: Plate, wishes: Sequence[tuple[str, float, float]]) -> Plat
         us, vs = zip(*plate.top, strict=True)
         taken.append(Rect((min(us), max(us)), (min(vs), top)).grown(CLEAR_MM))
     found: list[Words] = []
-    for text, u, v in wishes:
-        place = _place(plate.body, taken, text, (u, v))
+    for wish in wishes:
+        place = _place(plate.body, taken, wish)
         if place is not None:
             found.append(place)
-            taken.append(words_rect(place).grown(CLEAR_MM))
+            u, v = words_rect(place).u, words_rect(place).v
+            taken.append(Rect((u[0] - BETWEEN_MM, u[1] + BETWEEN_MM), (v[0] - CLEAR_MM, v[1] + CLEAR_MM)))
     return replace(plate, words=tuple(found))
 
 
@@ -39,26 +59,32 @@ def words_rect(words: Words) -> Rect:
     return Rect((words.u_mm, words.u_mm + width), (words.v_mm, words.v_mm + words.height_mm))
 
 
-def _place(body: Rect, taken: Sequence[Rect], text: str, wish: tuple[float, float]) -> Words | None:
+def _place(body: Rect, taken: Sequence[Rect], wish: Wish) -> Words | None:
+    """The largest text that comes near its wished place; else the nearest there is."""
+    best: tuple[float, Words] | None = None
     for height in HEIGHTS_MM:
-        width = text_width_mm(text, height)
-        room = body.grown(-CLEAR_MM)
-        span_u, span_v = room.u[1] - room.u[0] - width, room.v[1] - room.v[0] - height
-        if span_u < 0.0 or span_v < 0.0:
-            continue
-        us = _steps(room.u[0], span_u, wish[0] - width / 2.0)
-        vs = list(_steps(room.v[0], span_v, wish[1] - height / 2.0))
-        wish_u, wish_v = wish[0] - width / 2.0, wish[1] - height / 2.0
-        places = sorted(((u - wish_u) ** 2 + (v - wish_v) ** 2, u, v) for u in us for v in vs)
-        for _, u, v in places:
-            words = Words(text, u, v, height)
-            if not any(words_rect(words).meets(other) for other in taken):
-                return words
+        found = _nearest(body, taken, wish, height)
+        if found is not None and (best is None or found[0] < best[0]):
+            best = found
+        if best is not None and (best[0] <= NEAR_MM or wish.farthest_mm == math.inf):
+            break
+    return best[1] if best is not None and best[0] <= wish.farthest_mm else None
+
+
+def _nearest(body: Rect, taken: Sequence[Rect], wish: Wish, height_mm: float) -> tuple[float, Words] | None:
+    width = text_width_mm(wish.text, height_mm)
+    room = body.grown(-CLEAR_MM)
+    span_u, span_v = room.u[1] - room.u[0] - width, room.v[1] - room.v[0] - height_mm
+    if span_u < 0.0 or span_v < 0.0:
+        return None
+    wish_u, wish_v = wish.u_mm - width / 2.0, wish.v_mm - height_mm / 2.0
+    vs = list(_steps(room.v[0], span_v, wish_v))
+    places = ((math.hypot(u - wish_u, v - wish_v), u, v) for u in _steps(room.u[0], span_u, wish_u) for v in vs)
+    for apart, u, v in sorted(places):
+        words = Words(wish.text, u, v, height_mm)
+        if not any(words_rect(words).meets(other) for other in taken):
+            return apart, words
     return None
-
-
-REACH_STEPS = 30
-"""How far from its wished place a text is looked for, in steps."""
 
 
 def _steps(low: float, span: float, wish: float) -> Iterator[float]:
