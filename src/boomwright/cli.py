@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import signal
 import sys
-from collections.abc import Sequence
+from collections.abc import Callable, Iterator, Sequence
+from contextlib import contextmanager
 from enum import StrEnum
 from pathlib import Path
 from typing import Annotated, NoReturn
@@ -186,6 +187,48 @@ def show(subject: Annotated[Subject, typer.Argument(help="What to list.")]) -> N
     from boomwright.listing import listing
 
     typer.echo(listing(subject.value))
+
+
+@app.command()
+def fleet(
+    table: Annotated[Path, typer.Argument(help="The table of variants (TOML).")],
+    *,
+    shop: Annotated[Path | None, typer.Option(help="The shop of variants without their own.")] = None,
+    out: Annotated[
+        Path | None, typer.Option(help="The fleet's folder; absent = outputs/ and the table's name.")
+    ] = None,
+    jobs: Jobs = None,
+    scheduler: Annotated[str | None, typer.Option(metavar="ADDRESS", help="A dask scheduler to work on.")] = None,
+    as_json: AsJson = False,
+    quiet: Quiet = False,
+) -> None:
+    """Make many variants at once; what is up to date is left, and a fault of one does not stop the others."""
+    from boomwright.crew import processors
+    from boomwright.fleet.cluster import executor_at
+    from boomwright.fleet.run import run_fleet
+
+    with executor_at(scheduler) as executor, _bar() as progress:
+        made = run_fleet(table, shop, out, executor=executor, jobs=jobs or processors(), progress=progress)
+    if as_json:
+        typer.echo((made.folder / "fleet.json").read_text("utf-8"), nl=False)
+    elif not quiet:
+        for one in made.outcomes:
+            typer.echo(f"{one.name}: {one.state}")
+        typer.echo(f"{len(made.outcomes)} variants in {made.folder}, {len(made.failed)} failed")
+    for one in made.failed:
+        typer.echo(f"failed: {one.name}: {one.reason}", err=True)
+    raise typer.Exit(NOT_MET if made.failed else DONE)
+
+
+@contextmanager
+def _bar() -> Iterator[Callable[[int, int, str], None]]:
+    """A progress bar, on a terminal only."""
+    from rich.console import Console
+    from rich.progress import Progress
+
+    with Progress(console=Console(stderr=True), disable=not sys.stderr.isatty(), transient=True) as bar:
+        task = bar.add_task("making", total=None)
+        yield lambda done, of, name: bar.update(task, completed=done, total=of, description=name or "making")
 
 
 def _tell_shortfalls(shortfalls: Sequence[object]) -> None:

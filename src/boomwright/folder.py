@@ -7,14 +7,21 @@ import errno
 import fcntl
 import os
 import shutil
+import time
 from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
 
 from boomwright.errors import AccessError, Fault, InputFault
 
+OUTPUTS = Path("outputs")
+"""Where an output goes that nobody sent elsewhere."""
+
 MARKER = "manifest.json"
 """The file by which a folder is known to be ours to replace."""
+
+PATIENCE_S = 5.0
+"""How long a run waits for another at the same target: one whose parent was killed takes a moment to notice."""
 
 _AT_FDCWD = -100
 _RENAME_EXCHANGE = 2
@@ -75,6 +82,7 @@ def check_replaceable(target: Path) -> None:
 def _claim(target: Path) -> int:
     """A lock on the staging folder; taken anew when a finished run moved the folder away under us."""
     staging = staging_of(target)
+    deadline = time.monotonic() + PATIENCE_S
     while True:
         staging.mkdir(exist_ok=True)
         lock = os.open(staging, os.O_RDONLY | os.O_DIRECTORY)
@@ -82,6 +90,9 @@ def _claim(target: Path) -> int:
             fcntl.flock(lock, fcntl.LOCK_EX | fcntl.LOCK_NB)
         except BlockingIOError as error:
             os.close(lock)
+            if time.monotonic() < deadline:
+                time.sleep(0.05)
+                continue
             raise AccessError(errno.EBUSY, f"another run is writing {target}: wait until it has ended") from error
         try:
             if os.fstat(lock).st_ino == staging.stat().st_ino:

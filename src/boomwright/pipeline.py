@@ -9,9 +9,10 @@ from pathlib import Path
 from boomwright.audit import DESIGN_FILE, SHOP_FILE, Audit, audit_folder
 from boomwright.audit import FILE as AUDIT_FILE
 from boomwright.crew import crew
+from boomwright.design.model import Design
 from boomwright.design.tomlfile import load_design, write_design
 from boomwright.errors import CatalogueError, Fault, InputFault, PlanFault
-from boomwright.folder import check_replaceable, fresh_folder
+from boomwright.folder import OUTPUTS, check_replaceable, fresh_folder
 from boomwright.formats.format import FileEntry
 from boomwright.manifest import Manifest, write_manifest
 from boomwright.output import write_piece
@@ -19,9 +20,9 @@ from boomwright.parts.catalogue import PARTS
 from boomwright.pieces import IDENTITY, Part
 from boomwright.plan.plan import Plan, make_plan
 from boomwright.prediction import Prediction, predict
+from boomwright.shop.profile import Shop
 from boomwright.shop.tomlfile import load_shop, write_shop
 
-OUTPUTS = Path("outputs")
 ALWAYS = "antenna"
 """The part that is always made: the others are checked against it."""
 
@@ -64,18 +65,31 @@ def make(
     Raises InputFault for what the user gave, AccessError for what could not be read or written: nothing is changed.
     """
     design, shop = load_design(design_path), load_shop(shop_path)
-    chosen, plan = _chosen(only), None
     try:
-        plan = make_plan(design, shop)
-        left_out = {part.name: reason for part in chosen if (reason := part.left_out(plan)) is not None}
-        parts = [part for part in chosen if part.name not in left_out]
-        faults = [fault for part in parts for fault in plan.faults.get(part.name, ())]
-        if faults:
-            raise PlanFault(dict.fromkeys(faults))
-        progress("solving")
-        prediction = predict(design)
+        return make_design(design, shop, out, only, progress=progress, jobs=jobs)
     except InputFault as fault:
         raise _in_files(fault, design_path, shop_path) from None
+
+
+def make_design(
+    design: Design,
+    shop: Shop,
+    out: Path | None = None,
+    only: Sequence[str] = (),
+    *,
+    progress: Progress = lambda step: None,
+    jobs: int = 1,
+) -> Made:
+    """Build, write and audit everything a design in memory needs; arguments and errors as `make`."""
+    chosen = _chosen(only)
+    plan = make_plan(design, shop)
+    left_out = {part.name: reason for part in chosen if (reason := part.left_out(plan)) is not None}
+    parts = [part for part in chosen if part.name not in left_out]
+    faults = [fault for part in parts for fault in plan.faults.get(part.name, ())]
+    if faults:
+        raise PlanFault(dict.fromkeys(faults))
+    progress("solving")
+    prediction = predict(design)
     target = out if out is not None else OUTPUTS / design.name
     check_replaceable(target)
     with crew(jobs, PRELOAD) as executor, fresh_folder(target) as folder:
@@ -114,6 +128,9 @@ def _in_files(fault: InputFault, design_path: Path, shop_path: Path | None) -> I
     shop_file = str(shop_path) if shop_path else "built-in shop"
     named = []
     for one in fault.faults:
+        if one.path.startswith("--"):
+            named.append(one)
+            continue
         of_shop = one.path.split(".")[0].split("[")[0] in SHOP_SECTIONS
         named.append(one if one.file else replace(one, file=shop_file if of_shop else str(design_path)))
     return type(fault)(named)
