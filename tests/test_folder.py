@@ -107,7 +107,7 @@ with fresh_folder(Path(sys.argv[1])) as folder:
 
 
 def test_second_run_at_one_target_is_refused_clearly(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
-    monkeypatch.setattr(folder, "PATIENCE_S", 0.1)
+    monkeypatch.setattr("boomwright.folder.PATIENCE_S", 0.1)
     target = tmp_path / "beam"
     command = [sys.executable, "-c", HOLDING, str(target)]
     with subprocess.Popen(command, stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True) as other:
