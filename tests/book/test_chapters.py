@@ -234,9 +234,19 @@ def test_a_cradle_of_sections_is_joined_first() -> None:
     paths = ("print/cradle-2.stl", "print/cradle-outrigger-1.stl")
     more = (*run.manifest.entries, *(replace(entry, path=path) for path in paths))
     parted = replace(run, manifest=replace(run.manifest, entries=more))
-    assert "Join the 2 sections of the cradle" in text_of(gluing.chapter(parted))
-    assert "Set the 1 outrigger on the rails" in text_of(gluing.chapter(parted))
+    assert "let the 2 sections of the cradle down into each other's joints" in text_of(gluing.chapter(parted))
+    assert "Set the 1 outrigger to the rails" in text_of(gluing.chapter(parted))
     assert "section" not in text_of(gluing.chapter(run))
+
+
+def test_a_sheet_cradle_is_put_together_and_gives_its_own_heights() -> None:
+    both, sheet = run_of(samples.GAUGE, Shop()), run_of(samples.GAUGE, Shop(), ("cradle",))
+    words = text_of(jigs.chapter(sheet))
+    assert f"Sort the {sheet.size('sheet-cradle.plates'):.0f} plates of the sheet cradle" in words
+    assert f"{sheet.size('sheet-cradle.axis_height_mm') + 1.5:g} mm at both ends" in words
+    assert f"{both.size('cradle.axis_height_mm') + 1.5:g} mm at both ends" in text_of(jigs.chapter(both))
+    assert "2 saddles" in text_of(gluing.chapter(sheet))
+    assert "upside down" in text_of(gluing.chapter(sheet))
 
 
 @pytest.mark.slow

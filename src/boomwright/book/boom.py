@@ -42,9 +42,8 @@ def _steps(run: Run, grooved: bool) -> list[Step]:
     steps = [
         Step(
             f"Cut the boom to {mm(length)}, ends square. Mark the rear end and draw an arrow toward the front.",
-            "It measures that from end to end, a square against each end shows no light, and the boom shows no "
-            "bend when "
-            "you sight along it.",
+            "It measures that from end to end, a square against each end shows no light, and the boom shows no bend "
+            "when you sight along it.",
             None,
             caution,
         )
@@ -60,9 +59,8 @@ def _steps(run: Run, grooved: bool) -> list[Step]:
         pages = int(run.size("wrap.pages"))
         steps.append(
             Step(
-                f"Print the wrap template at true scale ({counted(pages, 'page')}), lay it round the boom, its "
-                "end line at "
-                "the boom's rear end, and prick every line through.",
+                f"Print the wrap template at true scale ({counted(pages, 'page')}), lay it round the boom, its end "
+                "line at the boom's rear end, and prick every line through.",
                 "The check bar on every page measures what stands beside it.",
             )
         )
@@ -97,8 +95,8 @@ def _groove_steps(run: Run) -> list[Step]:
     deepest = max(seat.grooves, key=lambda g: g.depth_mm)
     steps = [
         Step(
-            "File or mill each groove with its own round tool, straight across, until it has its depth. All rods' axes "
-            "then lie on one plane, whatever their diameters.",
+            "File or mill each groove with its own round tool, straight across, until it has its depth. All rods' "
+            "axes then lie on one plane, whatever their diameters.",
             f"The rod drops in and rests on the bottom; the deepest groove, {deepest.tag}, measures "
             f"{mm(deepest.depth_mm)} below the boom's top.",
         )
@@ -144,21 +142,20 @@ def _electrical(run: Run) -> str:
     if not run.has_metal_boom:
         return (
             f"The {boom.material} boom does not conduct, but it slows the wave a little: expect the antenna to read "
-            "slightly low in frequency. The prediction does not count it; the lengths are used as the design "
-            "gives them."
+            "slightly low in frequency. The prediction does not count it; the lengths are used as the design gives "
+            "them."
         )
     if seat.kind == "through" and seat.bond == "insulated":
         return (
             f"The rods pass through the {boom.material} boom in sleeves of {mm(seat.sleeve_mm)} and must not touch it. "
-            "The boom still shortens them electrically, less than a bonded one does. The prediction does not count it. "
-            "Check with a meter that no rod touches the boom: a rod that does works as another length."
+            "The boom still shortens them electrically, less than a bonded one does. The prediction does not count "
+            "it. Check with a meter that no rod touches the boom: a rod that does works as another length."
         )
     if seat.kind == "through":
         return (
             f"The rods are bonded to the {boom.material} boom: current flows across it, and every rod works as if it "
-            "were shorter, so the antenna reads high in frequency. The prediction does not count it; a design "
-            "for such a "
-            "boom has its rods longer by that. Every joint must conduct: one that corrodes shifts its rod."
+            "were shorter, so the antenna reads high in frequency. The prediction does not count it; a design for "
+            "such a boom has its rods longer by that. Every joint must conduct: one that corrodes shifts its rod."
         )
     return (
         f"The rods lie in grooves of a {boom.material} boom with adhesive between: whether they touch it is left to "

@@ -13,16 +13,15 @@ def chapter(run: Run) -> Chapter:
     blocks: list[Block] = [
         Paragraph(
             "All lengths are in millimetres. Places count from the datum, x growing toward the front; the boom "
-            "reaches from "
-            f"{mm(seat.start_mm)} to {mm(seat.end_mm)}. Lengths without a tolerance of their own: fine general "
-            "tolerance."
+            f"reaches from {mm(seat.start_mm)} to {mm(seat.end_mm)}. Lengths without a tolerance of their own: fine "
+            "general tolerance."
         ),
         Figure(Picture.BOOM_DRAWING, "Boom: every seat from one datum, with width and depth."),
     ]
     if run.design.rods:
         blocks.append(Figure(Picture.ROD_TABLE, "Rods: tag, length, diameter, place."))
     if run.has("cradle"):
-        height = mm(run.plan.cradle.axis_height_mm)
+        height = mm(run.axis_height_mm)
         blocks.append(Figure(Picture.CRADLE, f"Cradle: every axis {height} above the table."))
     if run.has_resin:
         x, y, z = (mm(high - low) for low, high in run.plan.mould.block)

@@ -65,7 +65,7 @@ def _jig_steps(run: Run) -> list[Step]:
             "It does not slide along the trough.",
         ),
         Step(
-            f"Saw along both walls of the cross slot, the blade inside the slot: what falls out is the gap of "
+            "Saw along both walls of the cross slot, the blade inside the slot: what falls out is the gap of "
             f"{mm(driven.gap_mm)}.",
             f"Both halves measure {mm(half)}, and a gauge block or drill shank of {mm(driven.gap_mm)} fills the slot.",
         ),
@@ -78,17 +78,16 @@ def _bend_steps(run: Run) -> list[Step]:
     length = developed_length_mm(driven)
     steps = [
         Step(
-            f"Straighten {mm(driven.diameter_mm)} {driven.material} wire by pulling it, and cut {mm(length)}, "
-            "ends square.",
+            f"Straighten {mm(driven.diameter_mm)} {driven.material} wire by pulling it, and cut {mm(length)}, ends "
+            "square.",
             "The wire rolls on a flat plate.",
         )
     ]
     if not run.has("former"):
         steps.append(
             Step(
-                f"Bend it on a drum or board of the right size; there is no former ({run.why_not('former')}). "
-                "Leave a gap of "
-                f"{mm(driven.gap_mm)}.",
+                f"Bend it on a drum or board of the right size; there is no former ({run.why_not('former')}). Leave a "
+                f"gap of {mm(driven.gap_mm)}.",
                 "It lies flat on the plate and matches the drawing laid under it at true scale.",
             )
         )
@@ -97,8 +96,8 @@ def _bend_steps(run: Run) -> list[Step]:
     turns = figure(plan.bends[0].turn_deg, 0)
     steps.append(
         Step(
-            "Mark the bends on the wire from one end, as in the table. Lay the wire in the channel, its end "
-            "against the stop.",
+            "Mark the bends on the wire from one end, as in the table. Lay the wire in the channel, its end against "
+            "the stop.",
             "The first mark's edge nearer the stop lies on the engraved line.",
         )
     )
@@ -168,9 +167,9 @@ def _fit_steps(run: Run) -> list[Step]:
         clip = "Set the clip over its upper side on the boom" if run.plan.mould.clip is not None else "Hold it upright"
         return [
             Step(
-                "Twist the ends at the gap apart sideways, as one opens a ring, pass the loop over the boom from above "
-                f"at {mm(driven.at_mm)} from the datum, its gap lowest, and twist it shut "
-                f"to {mm(driven.gap_mm)}. {clip}.",
+                "Twist the ends at the gap apart sideways, as one opens a ring, pass the loop over the boom from "
+                f"above at {mm(driven.at_mm)} from the datum, its gap lowest, and twist it shut to "
+                f"{mm(driven.gap_mm)}. {clip}.",
                 "It stands square to the boom from the side and from above, and the boom passes through its middle.",
                 picture,
             )
@@ -183,17 +182,15 @@ def _upright_steps(run: Run, picture: Picture | None) -> list[Step]:
     caution = Caution(f"Vapours of {name} again: open window, gloves, glasses.", Topic.ADHESIVE)
     return [
         Step(
-            f"Roughen and clean groove and wire, put a bead of {name} in the groove at {mm(driven.at_mm)} but not "
-            "in its "
-            "pocket, and press the fed conductor in.",
+            f"Roughen and clean groove and wire, put a bead of {name} in the groove at {mm(driven.at_mm)} but not in "
+            "its pocket, and press the fed conductor in.",
             "A thin line of adhesive shows at both sides, and the pocket is free of it.",
             picture,
             caution,
         ),
         Step(
-            f"Set the second conductor {mm(driven.spacing_mm or 0.0)} above the fed one, square to the boom, and "
-            "hold it so "
-            "until the adhesive has cured as its own data sheet says.",
+            f"Set the second conductor {mm(driven.spacing_mm or 0.0)} above the fed one, square to the boom, and hold "
+            "it so until the adhesive has cured as its own data sheet says.",
             "A square on the boom touches the bend at both ends, and the gap lies over the pocket.",
         ),
     ]
@@ -203,8 +200,8 @@ def _solder_steps(run: Run) -> list[Step]:
     driven, cable = run.design.driven, run.cable
     tail = joint_mm(driven)
     caution = Caution(
-        "Flux fumes harm the lungs: solder in moving air, not over the work. The iron and the joint stay hot for "
-        "a while.",
+        "Flux fumes harm the lungs: solder in moving air, not over the work. The iron and the joint stay hot for a "
+        "while.",
         Topic.SOLDER,
     )
     steps = [
@@ -220,9 +217,8 @@ def _solder_steps(run: Run) -> list[Step]:
     bare = driven.gap_mm / 2.0 + tail
     steps.append(
         Step(
-            f"Strip {cable.name}: jacket {mm(bare + tail)} back, the braid combed into one tail, the inner "
-            "conductor bare "
-            f"for {mm(tail)}, its insulation left up to there.",
+            f"Strip {cable.name}: jacket {mm(bare + tail)} back, the braid combed into one tail, the inner conductor "
+            f"bare for {mm(tail)}, its insulation left up to there.",
             "No strand of the braid can reach the inner conductor.",
         )
     )
@@ -231,8 +227,8 @@ def _solder_steps(run: Run) -> list[Step]:
         loop = next(value for name, value, _ in choke.figures if "loop" in name)
         steps.append(
             Step(
-                f"Solder the cable's inner conductor and one end of the {mm(loop, 1)} loop to one side of the gap, the "
-                "loop's other end to the other side, and all braids together (see the feed chapter).",
+                f"Solder the cable's inner conductor and one end of the {mm(loop, 1)} loop to one side of the gap, "
+                "the loop's other end to the other side, and all braids together (see the feed chapter).",
                 "A meter shows contact between both sides of the gap and none from either to the braids.",
             )
         )
@@ -240,15 +236,15 @@ def _solder_steps(run: Run) -> list[Step]:
         shorted = "contact" if driven.form != "straight" else "no contact"
         steps.append(
             Step(
-                "Solder the inner conductor to one side of the gap and the braid's tail to the other, tails as "
-                "short as they go.",
+                "Solder the inner conductor to one side of the gap and the braid's tail to the other, tails as short "
+                "as they go.",
                 f"A meter shows {shorted} between inner conductor and braid, as this element is meant to.",
             )
         )
     steps.append(
         Step(
-            "Lead the cable away along the boom, square to the element, and tie it so that it does not pull on "
-            "the joint.",
+            "Lead the cable away along the boom, square to the element, and tie it so that it does not pull on the "
+            "joint.",
             "Pulling the cable moves the boom, not the joint.",
         )
     )

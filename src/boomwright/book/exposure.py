@@ -40,9 +40,8 @@ def chapter(run: Run) -> Chapter:
         blocks.append(Paragraph(_formula_words()))
     else:
         words = (
-            "The tables that the program ships state no power density limit over this whole band: at low "
-            "frequencies the "
-            "limits are field strengths close to the antenna, which a far-field formula cannot give. Ask your "
+            "The tables that the program ships state no power density limit over this whole band: at low frequencies "
+            "the limits are field strengths close to the antenna, which a far-field formula cannot give. Ask your "
             "regulator."
         )
         blocks.append(Paragraph(words))
@@ -71,8 +70,8 @@ def _facts(run: Run, source: Source) -> tuple[tuple[str, str], ...]:
 def _distance_table(transmitter: Transmitter, source: Source) -> Table:
     rows = tuple(_row(one) for one in distances(source))
     caption = (
-        f"{figure(transmitter.power_w, 4)} W, {figure(100.0 * transmitter.duty)} percent on the air, "
-        f"EIRP {rough(source.eirp_w, 3)} W."
+        f"{figure(transmitter.power_w, 4)} W, {figure(100.0 * transmitter.duty)} percent on the air, EIRP "
+        f"{rough(source.eirp_w, 3)} W."
     )
     head = ("Guideline", "For", "Limit [W/m²]", "Averaged over", "Free field", "With the ground", "Keep")
     return Table(head, rows, caption)
@@ -94,9 +93,8 @@ def _formula_words() -> str:
     return (
         "Power density = EIRP x duty / (four pi x distance squared), in the middle of the beam. With the ground it is "
         f"{figure(GROUND_REFLECTION)} times that, the cautious case; the distance to keep is taken from it. In the "
-        "radiating near field the formula overstates, in the reactive near field it says nothing: no distance to "
-        "keep is "
-        "ever inside that. The duty counts only if it also holds within the averaging time. Local rules go first."
+        "radiating near field the formula overstates, in the reactive near field it says nothing: no distance to keep "
+        "is ever inside that. The duty counts only if it also holds within the averaging time. Local rules go first."
     )
 
 
@@ -105,15 +103,13 @@ def _steps(run: Run, sources: list[tuple[Transmitter, Source]], known: tuple[Dis
     keep = max((one.stated_m for one in distances(source)), default=reactive_m(source))
     whose = "" if known else ", at the very least, beyond the reactive near field,"
     exposure = Caution(
-        f"At {figure(transmitter.power_w, 4)} W keep everybody{whose} {metres(keep)} or more from the antenna in "
-        "its beam, "
-        "and never touch it while it transmits.",
+        f"At {figure(transmitter.power_w, 4)} W keep everybody{whose} {metres(keep)} or more from the antenna in its "
+        "beam, and never touch it while it transmits.",
         Topic.EXPOSURE,
     )
     licence = Caution(
         "Power, band, duty and antenna gain are limited by law, and most transmitting needs a licence: ask your "
-        "regulator "
-        "for the radiated power that is allowed here.",
+        "regulator for the radiated power that is allowed here.",
         Topic.LICENCE,
     )
     return [
@@ -124,9 +120,8 @@ def _steps(run: Run, sources: list[tuple[Transmitter, Source]], known: tuple[Dis
             exposure,
         ),
         Step(
-            f"Compare the radiated power ({rough(source.eirp_w, 3)} W EIRP at {figure(transmitter.power_w, 4)} "
-            "W) with what your "
-            "regulator allows in this band.",
+            f"Compare the radiated power ({rough(source.eirp_w, 3)} W EIRP at {figure(transmitter.power_w, 4)} W) "
+            "with what your regulator allows in this band.",
             "It is below the limit, cable loss left out.",
             None,
             licence,

@@ -18,8 +18,8 @@ def chapter(run: Run) -> Chapter:
     if run.cable is None or run.choke is None or run.match is None:
         words = (
             "The design names no cable, so choke and match are not sized. Put `feed.coax` in the design and make "
-            "again. "
-            "Whatever cable you take: the element is symmetric and the cable is not, so a choke belongs at the feed."
+            "again. Whatever cable you take: the element is symmetric and the cable is not, so a choke belongs at the "
+            "feed."
         )
         blocks.append(Paragraph(words))
         if divides_by_four(run.feed_ohm, run.design.feed.system_ohm):
@@ -63,8 +63,7 @@ def _length_table(run: Run) -> Table:
 def _two_systems(run: Run, cable: Cable) -> str:
     return (
         f"The design is judged in {figure(run.design.feed.system_ohm)} ohm, the cable has "
-        f"{figure(cable.impedance_ohm)} ohm: "
-        "matches below are made for the cable."
+        f"{figure(cable.impedance_ohm)} ohm: matches below are made for the cable."
     )
 
 
@@ -72,9 +71,8 @@ def _choke_blocks(choke: Choke) -> list[Block]:
     rows = tuple((name, figure(value, 2 if unit != "ohm" else 0), unit or "-") for name, value, unit in choke.figures)
     return [
         Paragraph(
-            "The element is symmetric and the cable is not. Without a choke the outside of the braid becomes "
-            "part of the "
-            "antenna: the beam tilts, and the reading changes when you touch the cable."
+            "The element is symmetric and the cable is not. Without a choke the outside of the braid becomes part of "
+            "the antenna: the beam tilts, and the reading changes when you touch the cable."
         ),
         Paragraph(f"Take a {choke.kind}: {choke.why}. Its rules are common practice."),
         Table(("Size", "Value", "Unit"), rows, f"The {choke.kind}."),

@@ -22,20 +22,19 @@ def _intro(run: Run) -> str:
     name = run.design.adhesive.name
     if run.has(*CRADLES) and run.plan.seat.grooves:
         return (
-            "The antenna lies in the cradle upside down: the rods below, the boom on top with its grooves facing down. "
-            f"The adhesive ({name}) hangs in the grooves while it cures, so it must not slump: try a bead on the "
+            "The antenna lies in the cradle upside down: the rods below, the boom on top with its grooves facing "
+            f"down. The adhesive ({name}) hangs in the grooves while it cures, so it must not slump: try a bead on the "
             "underside of a scrap first."
         )
     if run.has(*CRADLES):
         return (
-            "The rods go through the boom first; then boom and rods lie in the cradle while the adhesive "
-            f"({name}) cures."
+            f"The rods go through the boom first; then boom and rods lie in the cradle while the adhesive ({name}) "
+            "cures."
         )
     whys = listed(dict.fromkeys(run.why_not(part) for part in CRADLES if part in run.manifest.left_out))
     return (
         f"This run has no cradle ({whys or run.why_not(CRADLES[0])}). Work on a flat plate with packing under the "
-        "boom, and "
-        "check every rod with square and rule."
+        "boom, and check every rod with square and rule."
     )
 
 
@@ -53,28 +52,34 @@ def _try_step(run: Run) -> Step:
     play = 2.0 * run.shop.printer.slide_clearance_mm
     aside = sum(1 for stem in run.pieces("cradle") if "outrigger" in stem)
     pieces = len(run.pieces("cradle")) - aside
-    joined = (
-        f"Join the {counted(pieces, 'section')} of the cradle in the order of their numbers. " if pieces > 1 else ""
-    )
-    joined += f"Set the {counted(aside, 'outrigger')} on the rails by their tags: they carry the end stops. " * (
-        aside > 0
-    )
+    joined = _join_words(pieces, aside)
     through = [hole.tag for hole in run.plan.seat.holes]
     if through:
-        lay = f"Push {listed(through)} through the boom dry, set the cradle on a flat plate and lay all in it: {tags}."
+        lay = f"Push {listed(through)} through the boom dry, stand the cradle flat and lay all in it: {tags}."
     else:
         lay = (
-            f"Set the cradle on a flat plate, its arrow pointing the way the boom's will. Lay {tags} in their "
-            "notches, each "
+            f"Stand the cradle flat, its arrow pointing the way the boom's will. Lay {tags} in their notches, each "
             "between its stops, then the boom on its saddles."
         )
     return Step(
         f"{joined}{lay}",
         f"Nothing rocks, every rod turns freely and has about {mm(play)} of play along its length, and the boom "
-        "touches "
-        "all saddles but no rod carries it.",
+        "touches all saddles but no rod carries it.",
         Picture.CRADLE_RODS,
     )
+
+
+def _join_words(sections: int, outriggers: int) -> str:
+    words = ""
+    if sections > 1:
+        words = (
+            f"On one flat board, let the {sections} sections of the cradle down into each other's joints in the order "
+            "of "
+        )
+        words += "their numbers, faces butting, and screw them to the board. "
+    if outriggers:
+        words += f"Set the {counted(outriggers, 'outrigger')} to the rails the same way: they carry the end stops. "
+    return words
 
 
 def _clean_step(run: Run) -> Step:
@@ -84,8 +89,8 @@ def _clean_step(run: Run) -> Step:
         Topic.ADHESIVE,
     )
     return Step(
-        "Take it all apart. Roughen rods and seats where they meet, and wipe them with a solvent that leaves "
-        "nothing behind.",
+        "Take it all apart. Roughen rods and seats where they meet, and wipe them with a solvent that leaves nothing "
+        "behind.",
         "A drop of water spreads on the rod instead of pearling. Do not touch the places again.",
         None,
         caution,
@@ -109,18 +114,17 @@ def _groove_steps(run: Run) -> list[Step]:
         )
     steps.append(
         Step(
-            f"Mix the adhesive as its data sheet says. Turn the boom's grooves up and put a bead of about "
-            f"{figure(1000.0 * each, 0)} cubic millimetres in the bottom of the grooves of {listed(tags)}, none within "
-            f"{mm(relief)} of the boom's faces.{empty}",
+            "Mix the adhesive as its data sheet says. Turn the boom's grooves up and put a bead of about "
+            f"{figure(1000.0 * each, 0)} cubic millimetres in the bottom of the grooves of {listed(tags)}, none "
+            f"within {mm(relief)} of the boom's faces.{empty}",
             "Each bead stays where it is when you tilt the boom. If it creeps, it is the wrong adhesive for this.",
         )
     )
     where = "into the saddles of the cradle" if run.has(*CRADLES) else "onto the rods"
     steps.append(
         Step(
-            f"Turn the boom over in one go, grooves down, and lower it straight {where}: this is the joint that "
-            "must not "
-            "slump upside down.",
+            f"Turn the boom over in one go, grooves down, and lower it straight {where}: this is the joint that must "
+            "not slump upside down.",
             f"A thin line of adhesive shows at both sides of each rod, no drop hangs, and the film is about {mm(gap)}.",
             Picture.CRADLE_BOOM if run.has(*CRADLES) else None,
         )
@@ -175,13 +179,11 @@ def _through_steps(run: Run) -> list[Step]:
 
 
 def _tie_step(run: Run) -> Step:
-    saddles = len(run.plan.cradle.saddles) if run.plan.laid is not None else 0
     return Step(
-        f"Tie the boom down at each of the {saddles} saddles through the slots, hand tight. Wipe off what has "
+        f"Tie the boom down at each of the {run.saddles} saddles through the slots, hand tight. Wipe off what has "
         "squeezed out.",
         "The boom touches the saddles, every rod still lies in its notches, and no adhesive comes nearer to the "
-        "cradle "
-        f"than {mm(run.shop.cradle.relief_mm)}.",
+        f"cradle than {mm(run.shop.cradle.relief_mm)}.",
         Picture.CRADLE_BOOM,
     )
 
@@ -198,8 +200,8 @@ def _lift_step(run: Run) -> Step:
     if not run.has(*CRADLES):
         return Step("Take the packing away.", "No rod moves when you press on its end.")
     return Step(
-        "Cut the ties. Push the rods up through the windows under them, a little at each in turn, and lift the antenna "
-        "by its boom, never by a rod.",
+        "Cut the ties. Push the rods up through the windows under them, a little at each in turn, and lift the "
+        "antenna by its boom, never by a rod.",
         "It comes off in one piece, no adhesive sticks to the cradle, and no joint cracks.",
     )
 

@@ -90,12 +90,12 @@ def _print_steps(run: Run) -> tuple[Step, ...]:
     ]
     if run.has(*CRADLES) and run.design.rods:
         rod = run.design.rods[0]
-        height = run.plan.cradle.axis_height_mm if run.plan.laid is not None else 0.0
         steps.append(
             Step(
-                f"Lay a straight piece of {mm(rod.diameter_mm)} {rod.material} in the notches marked {rod.tag} on both "
-                "rails and measure from the table to the top of the rod.",
-                f"The height is {mm(height + rod.outer_diameter_mm / 2.0)} at both ends, alike within a tenth.",
+                f"Lay a straight piece of {mm(rod.diameter_mm)} {rod.material} in the notches marked {rod.tag} on "
+                "both rails and measure from the table to the top of the rod.",
+                f"The height is {mm(run.axis_height_mm + rod.outer_diameter_mm / 2.0)} at both ends, alike within a "
+                "tenth.",
             )
         )
     if run.has("mould"):
@@ -117,7 +117,7 @@ def _laser_steps(run: Run, laser: list[str]) -> tuple[Step, ...]:
         "corrosive fumes or catch fire. Stay with the machine, fume extraction on.",
         Topic.LASER,
     )
-    return (
+    steps = [
         Step(
             f"Measure the sheet with a calliper in three places before cutting {listed(laser)}.",
             f"It is {mm(sheet.sheet_mm)} thick. If not, put the measured value in the shop file and make again.",
@@ -126,10 +126,27 @@ def _laser_steps(run: Run, laser: list[str]) -> tuple[Step, ...]:
             f"Mark first, on the layers {sheet.layers.engrave} and {sheet.layers.score}, and cut last, on "
             f"{sheet.layers.cut}. The kerf of {mm(sheet.kerf_mm)} is in the file already: switch the cutter's own "
             "correction off.",
-            f"The pieces go together by hand with {mm(sheet.fit_mm)} of extra play, as the shop file asks. If "
-            "not, measure "
-            "the kerf on a test cut and correct the shop file.",
+            f"The pieces go together by hand with {mm(sheet.fit_mm)} of extra play, as the shop file asks. If not, "
+            "measure the kerf on a test cut and correct the shop file.",
             None,
             caution,
+        ),
+    ]
+    return (*steps, *_plate_steps(run)) if run.has("sheet-cradle") else tuple(steps)
+
+
+def _plate_steps(run: Run) -> tuple[Step, ...]:
+    """Putting the sheet cradle together."""
+    kinds = dict.fromkeys(standing.plate.kind for standing in run.plan.sheet_cradle.plates)
+    plates = len(run.plan.sheet_cradle.plates)
+    return (
+        Step(
+            f"Sort the {plates} plates of the sheet cradle by the words on them: {listed(kinds)}.",
+            "No plate is without its slot, and every arrow points the same way.",
+        ),
+        Step(
+            "Put the spreaders between the rails, then rails, saddles and stops into the slots of the base, dry. "
+            "When all is in, run a drop of wood glue into each joint and weigh it down on a flat plate.",
+            "Every foot is flush under the base, the rails stand upright, and nothing rocks.",
         ),
     )

@@ -30,11 +30,9 @@ def chapter(run: Run) -> Chapter:
         Heading("Wind"),
         _wind_table(run),
         Paragraph(
-            f"Force = half of {figure(AIR_KG_M3)} kg/m³ x speed squared x drag x area, with {figure(ROUND_DRAG)} "
-            "for round "
-            f"bars and {figure(SQUARE_DRAG)} for square ones; nothing is taken off for one part behind another, "
-            "nothing "
-            "is added for ice. Gusts, ice and safety factors are your local code's."
+            f"Force = half of {figure(AIR_KG_M3)} kg/m³ x speed squared x drag x area, with {figure(ROUND_DRAG)} for "
+            f"round bars and {figure(SQUARE_DRAG)} for square ones; nothing is taken off for one part behind another, "
+            "nothing is added for ice. Gusts, ice and safety factors are your local code's."
         ),
         Heading("Putting it up"),
         Steps(tuple(_steps(run))),
@@ -84,27 +82,24 @@ def _steps(run: Run) -> list[Step]:
     low, high = clamp_room_mm(run.plan, run.mounting)
     rear = run.mounting.balance_mm - run.plan.seat.start_mm
     caps = Caution(
-        "Rod ends are at eye height while you work, and afterwards if the antenna hangs low: put a soft cap on "
-        "every end.",
+        "Rod ends are at eye height while you work, and afterwards if the antenna hangs low: put a soft cap on every "
+        "end.",
         Topic.ROD_ENDS,
     )
     lines = Caution(
         "Keep mast and antenna away from overhead lines by more than the mast's whole length, also while it is "
-        "raised or "
-        "falls. Touching one kills.",
+        "raised or falls. Touching one kills.",
         Topic.OVERHEAD_LINES,
     )
     lightning = Caution(
-        "Bond mast and braid to earth and fit an arrester as your local rules ask; a qualified person does it. "
-        "Stay off "
-        "mast and roof when thunder can be heard.",
+        "Bond mast and braid to earth and fit an arrester as your local rules ask; a qualified person does it. Stay "
+        "off mast and roof when thunder can be heard.",
         Topic.LIGHTNING,
     )
     worst = max(run.mounting.wind_n(view, max(GUSTS_M_S)) for view in VIEW_WORDS)
     wind = Caution(
         f"A gust of {figure(max(GUSTS_M_S))} m/s pulls with up to {rough(worst)} N at the top of your mast, the "
-        "mast's own "
-        "wind load added. Do not work at height in wind.",
+        "mast's own wind load added. Do not work at height in wind.",
         Topic.WIND,
     )
     structure = Caution(
@@ -115,14 +110,12 @@ def _steps(run: Run) -> list[Step]:
         Step(*_cap_words(run), None, caps),
         Step(
             f"Balance the boom on a finger, {mm(rear, 1)} from its rear end, cable tied on.",
-            f"It lies level. Clamp there, on the free boom between {mm(low, 1)} and {mm(high, 1)} of the datum; "
-            "keep the "
-            "clamp off every joint.",
+            f"It lies level. Clamp there, on the free boom between {mm(low, 1)} and {mm(high, 1)} of the datum; keep "
+            "the clamp off every joint.",
         ),
         Step(
-            "Turn the rods as those of the far station: level with level, upright with upright. A metal mast "
-            "that runs along "
-            "upright rods spoils the pattern: then hold the boom at its rear end, behind the reflector.",
+            "Turn the rods as those of the far station: level with level, upright with upright. A metal mast that "
+            "runs along upright rods spoils the pattern: then hold the boom at its rear end, behind the reflector.",
             "Seen from the far station, both antennas' rods are parallel, and the front end points at it.",
         ),
         Step("Check mast and fixing against the wind table and your local code.", "They carry it.", None, structure),

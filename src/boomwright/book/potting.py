@@ -15,9 +15,8 @@ def chapter(run: Run) -> Chapter:
     """The resin block, or why there is none."""
     if not run.has_resin:
         words = (
-            f"This run has no mould ({run.why_not('mould')}). Seal the feed point against water another way: "
-            "cable end, "
-            "braid and joint must stay dry, or the match drifts with the weather."
+            f"This run has no mould ({run.why_not('mould')}). Seal the feed point against water another way: cable "
+            "end, braid and joint must stay dry, or the match drifts with the weather."
         )
         return Chapter("Potting the feed point", "potting", (Paragraph(words),))
     blocks: list[Block] = [
@@ -53,8 +52,8 @@ def _steps(run: Run) -> list[Step]:
         ),
         *_note_steps(run, before_closing=True),
         Step(
-            f"Close the halves round the feed point{' and the cable' if mould.coax is not None else ''}; pins "
-            "into sockets. "
+            f"Close the halves round the feed point{' and the cable' if mould.coax is not None else ''}; pins into "
+            "sockets. "
             + ("Tie them through the slots." if mould.face.ties else "Hold them together with tape or a clamp."),
             "The halves meet all round, and nothing of the antenna is bent.",
             Picture.MOULD_CLOSED,
@@ -64,9 +63,8 @@ def _steps(run: Run) -> list[Step]:
     if mould.coax is None:
         steps.append(
             Step(
-                "Mind that this mould has no cable channel, because the design names no cable: fit the cable's "
-                "tails or a "
-                "connector outside the block.",
+                "Mind that this mould has no cable channel, because the design names no cable: fit the cable's tails "
+                "or a connector outside the block.",
                 "Both sides of the gap stand out of the block or carry their leads.",
             )
         )
@@ -100,16 +98,14 @@ def _pour_step(run: Run) -> Step:
     layers = "pour in layers and let each cool" if volume > LARGE_POUR_ML else "do not leave a full cup standing"
     caution = Caution(
         f"Resin heats up as it sets, the more the larger the amount: {figure(LEFT_IN_THE_CUP * volume, 1)} ml are "
-        "mixed "
-        f"here, {layers}. A smoking cup goes outdoors. Gloves, glasses, fresh air.",
+        f"mixed here, {layers}. A smoking cup goes outdoors. Gloves, glasses, fresh air.",
         Topic.RESIN,
     )
     return Step(
-        f"Mix {figure(LEFT_IN_THE_CUP * volume, 1)} ml of resin slowly, as its data sheet says. Pour in a thin "
-        "stream into the "
-        "funnel, the funnel and vent highest.",
-        f"Resin stands in the vent and at the funnel's neck and no more bubbles come; about {figure(volume)} ml "
-        "went in.",
+        f"Mix {figure(LEFT_IN_THE_CUP * volume, 1)} ml of resin slowly, as its data sheet says. Pour in a thin stream "
+        "into the funnel, the funnel and vent highest.",
+        f"Resin stands in the vent and at the funnel's neck and no more bubbles come; about {figure(volume)} ml went "
+        "in.",
         None,
         caution,
     )
@@ -125,9 +121,8 @@ def _cure_step(run: Run) -> Step:
 def _open_step(run: Run) -> Step:
     if run.plan.mould.pull == "z":
         return Step(
-            "Break the sprue off, cut the ties, part the halves at the notch with a blunt blade, and lift them "
-            "off up and "
-            "down.",
+            "Break the sprue off, cut the ties, part the halves at the notch with a blunt blade, and lift them off "
+            "up and down.",
             "The block is closed all round, no conductor shows, and the cable's jacket is gripped by resin.",
         )
     rear, front = run.plan.mould.ends.travel_mm

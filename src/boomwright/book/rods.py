@@ -17,8 +17,8 @@ def chapter(run: Run) -> Chapter:
         return Chapter("Cutting the rods", "rods", (Paragraph(words),))
     blocks: list[Block] = [
         Paragraph(
-            "Length decides more than anything else here. Cut a little long, dress to length, check, and keep each rod "
-            "under its tag from then on."
+            "Length decides more than anything else here. Cut a little long, dress to length, check, and keep each "
+            "rod under its tag from then on."
         ),
         Figure(Picture.ROD_TABLE, "All rods with their lengths and places, from one datum."),
         Steps(tuple(_steps(run))),
@@ -71,8 +71,8 @@ def _length_steps(run: Run) -> list[Step]:
     slot = run.size("cut-block.slot_mm")
     return [
         Step(
-            "Dress one end square, push it against the stop of the cut block and saw in the slot of the rod's length, "
-            f"{mm(slot)} wide; keep the blade on the slot's wall toward the stop.",
+            "Dress one end square, push it against the stop of the cut block and saw in the slot of the rod's "
+            f"length, {mm(slot)} wide; keep the blade on the slot's wall toward the stop.",
             "A square held to both ends shows no light.",
         ),
         Step("Break all edges lightly.", "A fingernail does not catch."),

@@ -100,6 +100,18 @@ class Run:
         return tuple(held.tag for held in held_conductors(self.design))
 
     @property
+    def axis_height_mm(self) -> float:
+        """Height of the rods' axes above the bench in the cradle that was made, the printed one first [mm]."""
+        return self.plan.cradle.axis_height_mm if self.has("cradle") else self.plan.sheet_cradle.axis_height_mm
+
+    @property
+    def saddles(self) -> int:
+        """Number of saddles that carry the boom in that cradle."""
+        if self.has("cradle"):
+            return len(self.plan.cradle.saddles)
+        return sum(1 for standing in self.plan.sheet_cradle.plates if standing.plate.kind == "saddle")
+
+    @property
     def driven_lies(self) -> bool:
         """Whether the driven element lies in the cradle with the rods; else it is fitted once they have cured."""
         return "DE" in self.held_tags

@@ -120,8 +120,8 @@ def tolerance_words(length_mm: float) -> str:
 def _stock_words(run: Run) -> str:
     saw = run.shop.saw
     return (
-        f"Every cut takes {mm(saw.kerf_mm)}, every piece {mm(saw.dress_mm)} more at each end for dressing square. "
-        "Saw in the order of the table."
+        f"Every cut takes {mm(saw.kerf_mm)}, every piece {mm(saw.dress_mm)} more at each end for dressing square. Saw "
+        "in the order of the table."
     )
 
 

@@ -53,15 +53,13 @@ def _steps(run: Run, found: tuple[Reading, ...]) -> list[Step]:
     away = run.across_mm * 2.0 / 1000.0
     return [
         Step(
-            f"Hang the antenna on a dry wooden stand or a cord, pointing up or at open ground, {figure(away, 1)} "
-            "m or more "
-            "clear of metal, walls and yourself.",
+            f"Hang the antenna on a dry wooden stand or a cord, pointing up or at open ground, {figure(away, 1)} m or "
+            "more clear of metal, walls and yourself.",
             "Moving it by its own length changes nothing on the analyser.",
         ),
         Step(
-            f"Calibrate the analyser from {mhz(low)} to {mhz(high)} at the end of the cable that you connect, "
-            "with open, "
-            "short and load.",
+            f"Calibrate the analyser from {mhz(low)} to {mhz(high)} at the end of the cable that you connect, with "
+            "open, short and load.",
             "With the load on, it shows no reflection; with the short, a point that does not wander.",
         ),
         Step(
@@ -115,8 +113,8 @@ def _limit_words(run: Run) -> str:
         f"The limits hold for a shop as true as yours says ({mm(a.length_mm)} in length, {mm(a.position_mm)} in place, "
         f"{mm(a.height_mm)} in height, {mm(a.diameter_mm)} in diameter, one standard deviation each), at "
         f"{figure(DEVIATIONS)} standard deviations to first order. The gain then spreads by "
-        f"{rough(gain_spread_db(run))} dB. Boom, "
-        "resin, adhesive and cable are not counted: they can shift the whole curve a little to the side."
+        f"{rough(gain_spread_db(run))} dB. Boom, resin, adhesive and cable are not counted: they can shift the whole "
+        "curve a little to the side."
     )
 
 
