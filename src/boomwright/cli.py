@@ -159,23 +159,46 @@ def propose(
     quiet: Quiet = False,
 ) -> None:
     """Find a design for a band and write the design file."""
-    from boomwright.search.document import check_target, proposal_text, write_text
-    from boomwright.search.propose import propose as find
+    from boomwright.search.files import propose_file
     from boomwright.search.request import Request, band_of, form_of
-    from boomwright.shop.tomlfile import load_shop
 
-    check_target(out)
     low_mhz, high_mhz = band_of(band)
     form = form_of(driven)
     wishes = (gain_min, front_to_back_min, vswr_max)
     request = Request(
         low_mhz, high_mhz, boom_mm, rods, rod_mm, reflector_mm, boom_width_mm, form, ohm, *wishes, seed, name
     )
-    found = find(request, load_shop(shop), _progress)
-    write_text(out, proposal_text(found))
-    _progress("")
+    found = propose_file(request, shop, out, _progress)
     if not quiet:
         typer.echo(found.summary)
+        typer.echo(f"written: {out}")
+    _tell_shortfalls(found.shortfalls)
+    raise typer.Exit(NOT_MET if found.shortfalls else DONE)
+
+
+@app.command()
+def rescale(
+    design: Annotated[Path, typer.Argument(help="The design file (TOML).")],
+    to_mhz: Annotated[float, typer.Option(help="The new centre frequency; the band scales along.")],
+    out: Annotated[Path, typer.Option(help="The design file to write.")],
+    *,
+    rod_mm: Annotated[float | None, typer.Option(help="Diameter of all rods; absent = the nearest on sale.")] = None,
+    boom_width_mm: Annotated[
+        float | None, typer.Option(help="Boom's diameter or side; absent = nearest on sale.")
+    ] = None,
+    shop: Annotated[Path | None, typer.Option(help="The shop file (TOML); absent = the built-in shop.")] = None,
+    as_json: AsJson = False,
+    quiet: Quiet = False,
+) -> None:
+    """Carry a proven design to another band and stock, and report its figures before and after."""
+    from boomwright.search.carry import Target
+    from boomwright.search.files import rescale_file
+
+    found = rescale_file(design, Target(to_mhz, rod_mm, boom_width_mm), shop, out, _progress)
+    if as_json:
+        typer.echo(found.as_json(), nl=False)
+    elif not quiet:
+        typer.echo("\n".join(found.lines))
         typer.echo(f"written: {out}")
     _tell_shortfalls(found.shortfalls)
     raise typer.Exit(NOT_MET if found.shortfalls else DONE)

@@ -14,6 +14,7 @@ from boomwright.design.tomlfile import write_design
 from boomwright.errors import AccessError, Fault, InputFault
 from boomwright.prediction import Prediction
 from boomwright.search.propose import Proposal
+from boomwright.search.rescale import Rescaled
 
 MARK = "boomwright"
 WIDTH = 110
@@ -31,6 +32,18 @@ def proposal_text(proposal: Proposal) -> str:
         *(f"Limit: {limit}." for limit in proposal.limits),
         *(f"Not met: {shortfall}." for shortfall in proposal.shortfalls),
         *(f"This shop cannot make it as it stands: {fault.path}: {fault.found}." for fault in proposal.unbuilt),
+        *dimension_lines(design),
+    ]
+    return commented(lines) + write_design(design)
+
+
+def rescaled_text(rescaled: Rescaled, source: str) -> str:
+    """The design file of a carried design; `source` names the one it came from."""
+    design = rescaled.design
+    lines = [
+        f"Rescaled by {MARK} {__version__} from {source} to {design.band.centre_mhz:g} MHz.",
+        *rescaled.lines,
+        *(f"Not met: {shortfall}." for shortfall in rescaled.shortfalls),
         *dimension_lines(design),
     ]
     return commented(lines) + write_design(design)
@@ -55,7 +68,7 @@ def commented(lines: list[str]) -> str:
     return "".join(f"# {line}\n" for line in wrapped)
 
 
-def check_target(path: Path) -> None:
+def check_target_file(path: Path) -> None:
     """Raises InputFault unless a design may be written there: a new file, or one that a run like this wrote."""
     if path.is_dir():
         raise InputFault([Fault("--out", f"{escaped(str(path))} is a folder", "name a file, as beam.toml")])
@@ -74,9 +87,9 @@ def check_target(path: Path) -> None:
 def write_text(path: Path, text: str) -> None:
     """Write a file beside its place and put it there in one step.
 
-    Raises InputFault as `check_target`, AccessError when it cannot be written.
+    Raises InputFault as `check_target_file`, AccessError when it cannot be written.
     """
-    check_target(path)
+    check_target_file(path)
     staged: str | None = None
     try:
         path.parent.mkdir(parents=True, exist_ok=True)

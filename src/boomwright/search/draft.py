@@ -28,25 +28,30 @@ REFLECTOR_SPAN, DRIVEN_SPAN, DIRECTOR_SPAN = (0.97, 1.22), (0.86, 1.13), (0.70, 
 LOOP_SPAN_WL = (0.95, 1.3)
 TABLE_LENGTHS = (3, 3, 4)
 WIDEST_GAP_WL = 0.48
+SAMPLES, SAMPLES_PER_WL, MOST_SAMPLES = 30.0, 60.0, 15
+"""Frequencies solved beyond three, for each unit of relative bandwidth: a long array's match ripples over the band."""
+
 PLAIN = Mode(0, 0)
 """The family is tabulated with currents even round the conductor; full solutions put back what that leaves out."""
 
 
 @dataclass(frozen=True)
 class Frame:
-    """What all candidates of one proposal share: request, stock of this driven form, least gaps, resonant lengths."""
+    """What all arrays of one driven form share: request, stock, least gaps, resonant lengths, expected length [mm]."""
 
     request: Request
     stock: Stock
     gaps: Gaps
     resonant_m: tuple[float, float, float]
+    boom_mm: float
 
     @property
     def frequencies_hz(self) -> tuple[float, ...]:
         """Where arrays are solved while they are searched: more in a wide band."""
         low, high = hz_from_mhz(self.request.low_mhz), hz_from_mhz(self.request.high_mhz)
         width = (high - low) / (high + low) * 2.0
-        count = 3 if width < 0.02 else 5 if width < 0.1 else 7
+        count = 3 + round(width * (SAMPLES + SAMPLES_PER_WL * self.boom_mm / self.request.wavelength_mm))
+        count = min(count, MOST_SAMPLES)
         return tuple(float(value) for value in np.linspace(low, high, count))
 
 
@@ -89,16 +94,16 @@ def trial_design(request: Request, stock: Stock, gaps_mm: tuple[float, float]) -
     return draft_design(request, stock, lengths, np.array([0.0, gaps_mm[0], sum(gaps_mm), last]))
 
 
-def frame_of(request: Request, stock: Stock, gaps: Gaps) -> Frame:
+def frame_of(request: Request, stock: Stock, gaps: Gaps, boom_mm: float) -> Frame:
     """The frame of a stock; resonant lengths come from the solver."""
     centre_hz = hz_from_mhz(request.centre_mhz)
     wave_m = m_from_mm(request.wavelength_mm)
     conductors = _conductors(request, stock)
     resonant = [length_of_reactance_m(wire, 0.0, centre_hz) for wire in conductors if isinstance(wire, Wire)]
     if len(resonant) == 3:
-        return Frame(request, stock, gaps, (resonant[0], resonant[1], resonant[2]))
+        return Frame(request, stock, gaps, (resonant[0], resonant[1], resonant[2]), boom_mm)
     driven = wave_m if stock.driven.form == "loop" else _folded_length_m(stock, centre_hz)
-    return Frame(request, stock, gaps, (resonant[0], driven, resonant[1]))
+    return Frame(request, stock, gaps, (resonant[0], driven, resonant[1]), boom_mm)
 
 
 def _folded_length_m(stock: Stock, centre_hz: float) -> float:

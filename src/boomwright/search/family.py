@@ -164,8 +164,9 @@ class _Solving:
                 back = (rear[..., None, :, 0] @ found[slope])[..., 0, :]
                 change = np.einsum("pfax,pfa->xfp", rear, onward) + np.einsum("pfbx,pfb->xfp", front, back)
                 for columns, sign in onto:
-                    for p, column in enumerate(columns):
-                        total[:, :, column] -= sign * change[:, :, p]
+                    spread = np.zeros((len(a), 2 * count))
+                    spread[np.arange(len(a)), columns] = sign
+                    total -= change @ spread
         return total
 
     def _field_slopes(self, currents: Complexes) -> Complexes:

@@ -11,6 +11,7 @@ from boomwright.errors import Fault, InputFault
 from boomwright.plan.plan import make_plan
 from boomwright.search.stock import Stock, least_web_gap_mm
 from boomwright.shop.profile import Shop
+from boomwright.units import wavelength_mm
 
 LEAST_WL = 0.045
 """Least distance of two neighbours [wavelengths]: nearer ones work against one another, and a hair moves the gain."""
@@ -73,6 +74,42 @@ def least_gaps(stock: Stock, wavelength: float, trial: Callable[[float, float], 
     rounded = [math.ceil(value / step - 1e-6) * step for value in (back, spacing + front, between)]
     why = "the grooves' web" if between > floor else "electrical"
     return Gaps(rounded[0], rounded[1], rounded[2], (back_why, front_why, why))
+
+
+def least_room_mm(design: Design, shop: Shop) -> tuple[float, float]:
+    """Least distances of the driven element's place from the rod behind and the rod ahead of it [mm] in a design.
+
+    What its seats and its mould need; 0 where no rod stands.
+    """
+    far = FAR_WL * wavelength_mm(design.band.centre_mhz)
+    usual = _mould_faults(_spread(design, far, far), shop)
+
+    def least(behind: bool) -> float:
+        low, high = 0.0, far
+        for _ in range(SEARCH_STEPS + 2):
+            middle = (low + high) / 2.0
+            trial = _spread(design, middle if behind else far, far if behind else middle)
+            low, high = (low, middle) if _mould_faults(trial, shop) <= usual else (middle, high)
+        return high
+
+    sides = (any(rod.at_mm < design.driven.at_mm for rod in design.rods), any(_ahead(design)))
+    return least(True) if sides[0] else 0.0, least(False) if sides[1] else 0.0
+
+
+def _ahead(design: Design) -> list[bool]:
+    return [rod.at_mm > design.driven.at_mm for rod in design.rods]
+
+
+def _spread(design: Design, behind_mm: float, ahead_mm: float) -> Design:
+    """The design with its neighbours' rows moved to these distances from the driven element's place."""
+    at = design.driven.at_mm
+    back = max((rod.at_mm for rod in design.rods if rod.at_mm < at), default=at)
+    front = min((rod.at_mm for rod in design.rods if rod.at_mm > at), default=at)
+    rods = tuple(
+        replace(rod, at_mm=rod.at_mm + (at - behind_mm - back if rod.at_mm < at else at + ahead_mm - front))
+        for rod in design.rods
+    )
+    return replace(design, rods=rods)
 
 
 def _mould_faults(design: Design, shop: Shop) -> frozenset[str]:

@@ -21,8 +21,10 @@ MATCH_PENALTY_DB = 30.0
 RATIO_PENALTY = 3.0
 """What one decibel of front-to-back short of its bound costs in gain."""
 
-GAIN_PENALTY = 3.0
-TOLERANCE_DB = 3e-4
+LENGTH_UNIT_WL, GAP_UNIT_WL = 0.01, 0.04
+"""Changes that move the gain by about a decibel: in these units the first steps are neither wild nor timid."""
+
+TOLERANCE_DB = 5e-4
 
 
 class Solves(Protocol):
@@ -103,12 +105,13 @@ def _mismatch(found: Figures, system_ohm: float) -> tuple[Floats, Floats]:
 
 
 class _Search:
-    """Variables: lengths and gaps in wavelengths (middle frequency), then t [dB], then what is let go."""
+    """Variables: lengths and gaps in units that move the gain about alike, then t [dB], then what is let go."""
 
     def __init__(self, family: Solves, bounds: Bounds, aim: Aim, count: int) -> None:
         self.family, self.bounds, self.aim, self.count = family, bounds, aim, count
-        self.unit_m = 2.0 * np.pi / float(family.wavenumbers.mean())
+        wavelength_m = 2.0 * np.pi / float(family.wavenumbers.mean())
         self.sizes = 2 * count - 1
+        self.units_m = wavelength_m * np.array([LENGTH_UNIT_WL] * count + [GAP_UNIT_WL] * (count - 1))
         gaps = np.zeros((count, count - 1))
         for place in range(1, count):
             gaps[place, :place] = 1.0
@@ -116,13 +119,13 @@ class _Search:
         self.chain = np.zeros((2 * count, self.sizes))
         self.chain[:count, :count] = np.eye(count)
         self.chain[count:, count:] = gaps
-        self.chain *= self.unit_m
+        self.chain *= self.units_m
         self._seen: tuple[bytes, Figures] | None = None
 
     def run(self, start: tuple[Floats, Floats], steps: int) -> Array:
         lengths, gaps = start[0], np.diff(start[1])
-        sizes = np.concatenate([lengths, gaps]) / self.unit_m
-        low, high = np.concatenate([self.bounds.length_m, self.bounds.gap_m]).T / self.unit_m
+        sizes = np.concatenate([lengths, gaps]) / self.units_m
+        low, high = np.concatenate([self.bounds.length_m, self.bounds.gap_m]).T / self.units_m
         sizes = np.clip(sizes, low, high)
         gain = float(self._figures(sizes).gain_dbi.min())
         first = np.concatenate([sizes, [gain, 0.0]])
@@ -131,7 +134,7 @@ class _Search:
         if self.bounds.boom_m is not None:
             across = np.zeros(len(first))
             across[self.count : self.sizes] = 1.0
-            whole = self.bounds.boom_m / self.unit_m
+            whole = self.bounds.boom_m / self.units_m[-1]
             constraints.append({"type": "eq", "fun": lambda x: x @ across - whole, "jac": lambda x: across})
         cost = np.zeros(len(first))
         cost[-2], cost[-1] = -1.0, MATCH_PENALTY_DB
@@ -151,21 +154,25 @@ class _Search:
             "callback": watch,
             "options": {"maxiter": steps, "ftol": TOLERANCE_DB},
         }
-        found = minimize(lambda x: float(cost @ x), first, **settings)
-        watch(found.x)
+        watch(minimize(self._height, first, **settings).x)
         return best or self._array(sizes)
+
+    def _height(self, x: Floats) -> float:
+        return MATCH_PENALTY_DB * float(x[-1]) - float(x[-2])
 
     def _sums(self, x: Floats) -> bool:
         boom_m = self.bounds.boom_m
-        return boom_m is None or abs(float(x[self.count : self.sizes].sum()) * self.unit_m - boom_m) < 1e-6 * boom_m
+        return (
+            boom_m is None or abs(float(x[self.count : self.sizes].sum()) * self.units_m[-1] - boom_m) < 1e-6 * boom_m
+        )
 
     def _array(self, sizes: Floats) -> Array:
         lengths_m, places_m = self._places(sizes)
         return Array(lengths_m, places_m, self.aim.merit_db(self._figures(sizes)))
 
     def _places(self, sizes: Floats) -> tuple[Floats, Floats]:
-        gaps = sizes[self.count :] * self.unit_m
-        return sizes[: self.count] * self.unit_m, np.concatenate([[0.0], np.cumsum(gaps)])
+        lengths, gaps = np.split(sizes * self.units_m, [self.count])
+        return lengths, np.concatenate([[0.0], np.cumsum(gaps)])
 
     def _figures(self, sizes: Floats) -> Figures:
         key = sizes.tobytes()

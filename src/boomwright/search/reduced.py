@@ -29,6 +29,7 @@ SHAPES_TOLERANCE = 2e-4
 
 NEIGHBOURS_WL = (0.06, 0.12, 0.25)
 OWN_NODES = 6
+FEWEST_NODES, NODES_PER_WIDTH = 3, 20.0
 
 
 @dataclass(frozen=True)
@@ -160,6 +161,19 @@ class OwnTable:
         self.feed = basis.T @ excitation((shapes.template,)).real if shapes.kind.conductor.gap_m > 0.0 else None
 
 
+def _few(frequencies_hz: tuple[float, ...]) -> tuple[tuple[float, ...], Floats]:
+    """Frequencies that couplings are filled at, and their shares in each one wanted: without their phase they are
+
+    smooth, and a few nodes carry a band.
+    """
+    low, high = frequencies_hz[0], frequencies_hz[-1]
+    count = FEWEST_NODES + math.ceil(NODES_PER_WIDTH * (high - low) / (high + low))
+    if count >= len(frequencies_hz):
+        return frequencies_hz, np.eye(len(frequencies_hz))
+    axis = Axis(low, high, count)
+    return tuple(float(value) for value in axis.places), axis.weights(np.array(frequencies_hz))[0]
+
+
 class PairTable:
     """Blocks between two kinds, the first behind the second, by both lengths and by distance."""
 
@@ -172,18 +186,21 @@ class PairTable:
         count = 6 + math.ceil(3.0 * (high - low) + 1.2 * k[-1] * (span_m[1] - span_m[0]) / math.pi)
         self.axes = (behind.axis, ahead.axis, Axis(low, high, count))
         self.wavenumbers = k
+        nodes, shares = _few(frequencies_hz)
         mode: Mode = behind.planner.mode
-        shape = (behind.axis.count, ahead.axis.count, count, len(k), behind.basis.shape[1], ahead.basis.shape[1])
+        shape = (behind.axis.count, ahead.axis.count, count, len(nodes), behind.basis.shape[1], ahead.basis.shape[1])
         values = np.empty(shape, dtype=np.complex128)
         for n, place in enumerate(self.axes[2].places):
             free_m = math.exp(place)
             rears, fronts = behind.row(0.0, free_m), ahead.row(free_m + self.shift_m, free_m)
-            for f, frequency_hz in enumerate(frequencies_hz):
-                turned = free_m * np.exp(1j * k[f] * free_m)
+            for f, frequency_hz in enumerate(nodes):
+                turned = free_m * np.exp(1j * wavenumber_rad_m(frequency_hz) * free_m)
                 for i, rear in enumerate(rears):
                     for j, front in enumerate(fronts):
                         block = coupling_block(rear, front, frequency_hz, mode)
                         values[i, j, n, f] = turned * (behind.basis.T @ block @ ahead.basis)
+        values = np.ascontiguousarray(np.einsum("kf,ijnfab->ijnkab", shares, values))
+        shape = values.shape
         self.shape = shape[3:]
         self.values = values.reshape(math.prod(shape[:3]), -1).view(np.float64)
 

@@ -11,8 +11,12 @@ from boomwright.plan.seat import WEB_PER_RADIUS
 from boomwright.shop.profile import Bar, Shop
 from boomwright.units import wavelength_mm
 
-ROD_WL, WIRE_WL = 0.0085, 0.0065
-"""Wished diameters [wavelengths]: that of the published arrays, and a wire that bends into a folded element."""
+ROD_WL, WIDE_ROD_WL, WIRE_WL = 0.0085, 0.016, 0.009
+"""Wished diameters [wavelengths]: that of the published arrays, one for wide bands, which thicker rods hold better,
+and a wire that bends into a folded element."""
+
+NARROW, WIDE = 0.015, 0.04
+"""Relative bandwidths between which rods are chosen thicker."""
 
 ROD_SIZES_MM = (1.0, 1.5, 2.0, 3.0, 4.0, 5.0, 6.0, 8.0)
 WIRE_SIZES_MM = (0.8, 1.0, 1.5, 2.0, 3.0, 4.0, 5.0, 6.0)
@@ -27,6 +31,7 @@ BOOM_MOST_FOR_LENGTH_MM = 40.0
 BOOM_PER_DEPTH = 2.4
 FINE_ABOVE_MHZ = 3000.0
 GAP_WL, LEAST_GAP_MM, MOST_GAP_MM = 0.012, 1.5, 12.0
+MOST_SPACING_MM = 80.0
 LEAST_BEND_DIAMETERS = 5.0
 """Spacing of a folded element in diameters: bends of its wire stay above four radii, where the equations hold."""
 
@@ -59,10 +64,15 @@ class Stock:
 
 @dataclass(frozen=True)
 class Wish:
-    """What the user asked of the stock; None = free. Lengths [mm]; boom_mm the expected length of the array."""
+    """What the user asked of the stock; None = free. Lengths [mm].
+
+    boom_mm         the expected length of the array
+    relative_width  of the band
+    """
 
     centre_mhz: float
     boom_mm: float
+    relative_width: float = 0.0
     rod_mm: float | None = None
     reflector_mm: float | None = None
     boom_width_mm: float | None = None
@@ -82,7 +92,8 @@ def choose_stock(wish: Wish, form: Form, spacing_wl: float, shop: Shop) -> Stock
     shop        its shelf is preferred
     """
     wave = wavelength_mm(wish.centre_mhz)
-    director, material = _rod(wish.rod_mm, ROD_WL * wave, shop.stock)
+    share = min(max((wish.relative_width - NARROW) / (WIDE - NARROW), 0.0), 1.0)
+    director, material = _rod(wish.rod_mm, (ROD_WL + share * (WIDE_ROD_WL - ROD_WL)) * wave, shop.stock)
     reflector, reflector_material = director, material
     if wish.reflector_mm is not None:
         reflector, reflector_material = _rod(wish.reflector_mm, wish.reflector_mm, shop.stock)
@@ -117,7 +128,7 @@ def _rod(wished_mm: float | None, free_mm: float, shelf: tuple[Bar, ...]) -> tup
     if shelf:
         bar = min(shelf, key=lambda bar: (_apart(bar.diameter_mm, free_mm), bar.material))
         return bar.diameter_mm, bar.material
-    size = _nearest(ROD_SIZES_MM, free_mm)
+    size = nearest_size_mm(ROD_SIZES_MM, free_mm)
     return size, _common_material(size)
 
 
@@ -130,11 +141,13 @@ def _driven(form: Form, wave_mm: float, spacing_wl: float, near: tuple[float, tu
     elif form == "straight":
         wire, material = rod_mm, "copper" if rod_mm <= BRASS_UP_TO_MM else "aluminium"
     else:
-        wire, material = _nearest(WIRE_SIZES_MM, wish), "copper"
+        wire, material = nearest_size_mm(WIRE_SIZES_MM, wish), "copper"
     gap = round(2.0 * min(max(GAP_WL * wave_mm, LEAST_GAP_MM, 1.5 * wire), MOST_GAP_MM)) / 2.0
     driven = Driven(form, 0.0, wire, material, gap)
     if form == "folded":
-        spacing = math.ceil(2.0 * max(spacing_wl * wave_mm, LEAST_BEND_DIAMETERS * wire) - 1e-9) / 2.0
+        spacing = (
+            math.ceil(2.0 * max(min(spacing_wl * wave_mm, MOST_SPACING_MM), LEAST_BEND_DIAMETERS * wire) - 1e-9) / 2.0
+        )
         return replace(driven, spacing_mm=spacing, plane="flat")
     if form == "loop":
         return replace(driven, shape="square")
@@ -149,5 +162,6 @@ def _apart(size_mm: float, wish_mm: float) -> float:
     return abs(math.log(size_mm / wish_mm))
 
 
-def _nearest(sizes_mm: Iterable[float], wish_mm: float) -> float:
+def nearest_size_mm(sizes_mm: Iterable[float], wish_mm: float) -> float:
+    """The size nearest to a wish, by ratio [mm]."""
     return min(sizes_mm, key=lambda size: _apart(size, wish_mm))
