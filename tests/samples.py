@@ -79,5 +79,16 @@ LOOP_2450 = Design(
     Boom("round", 8.0, "beech", 14.0, 12.0),
     Seat(),
 )
+LONG_145 = Design(
+    "long-145",
+    Band(144.0, 146.0, 145.0),
+    Driven("folded", 420.0, 6.0, "aluminium", 10.0, length_mm=970.0, spacing_mm=40.0, plane="flat"),
+    Feed(50.0, "RG-58"),
+    (rod("R", 0, 1030, 6), rod("D1", 780, 940, 6, 1), rod("D2", 1320, 920, 6, 2), rod("D3", 1900, 900, 6, 3)),
+    Boom("round", 25.0, "beech", 60.0, 60.0),
+    Seat(),
+)
+"""Rods of a metre on two metres of boom: a printed cradle in many sections, with outriggers."""
+
 FITTING = (GAUGE, CAMERA, CAMERA_FOLDED, SQUARE_915, MIXED_1296, TUBE_915, UPRIGHT_868, LOOP_868, LOOP_2450)
 """Designs whose every part fits the built-in shop."""

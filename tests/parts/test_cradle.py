@@ -1,6 +1,7 @@
 """The cradle as a solid, checked with the kernel directly: it carries every conductor and touches nothing else."""
 
 from dataclasses import dataclass
+from functools import cache
 
 import cadquery as cq
 import pytest
@@ -32,6 +33,7 @@ class Laid:
         return self.design.boom
 
 
+@cache
 def laid(design: Design) -> Laid:
     assert design.boom is not None
     seat, _, _ = plan_seat(design, design.boom, design.seat or Seat())
@@ -40,6 +42,7 @@ def laid(design: Design) -> Laid:
     return Laid(design, seat, cradle)
 
 
+@cache
 def shape_of(cradle: CradlePlan, offsets: Offsets = NOMINAL) -> cq.Shape:
     (section,) = cradle.sections
     return section_shape(section, cradle.axis_height_mm, Shop().printer.press_clearance_mm, offsets)

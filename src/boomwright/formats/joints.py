@@ -66,7 +66,7 @@ def _joint(arguments: Mapping[str, Any]) -> tuple[tuple[float, ...], Box]:
     return tuple(float(value) for value in arguments["along"]), (low, high)  # type: ignore[return-value]
 
 
-@lru_cache(maxsize=256)
+@lru_cache(maxsize=64)
 def _play(
     one: StepReading, other: StepReading, frame: Frame, other_frame: Frame, joint: tuple[tuple[float, ...], Box]
 ) -> float:

@@ -8,8 +8,9 @@ from typing import TYPE_CHECKING, Any
 from boomwright.pieces import Expectation, Probe
 from boomwright.plan.compensation import NOMINAL, Offsets
 from boomwright.plan.cradle_budget import joints_before
-from boomwright.plan.cradle_model import BASE_MM, NOTCH_ALLOWED_MM, Block, CradlePlan, Section, mirrored
+from boomwright.plan.cradle_model import BASE_MM, NOTCH_ALLOWED_MM, CradlePlan, Section, mirrored
 from boomwright.plan.joint import BORE_MM, Joint
+from boomwright.plan.outrigger import REST_MM
 
 if TYPE_CHECKING:
     from boomwright.plan.plan import Plan
@@ -72,15 +73,11 @@ def _blocks(cradle: CradlePlan, section: Section, file: str, growth_mm: float) -
             what = f"{block.tag} stop at {word} {abs(inner):g} from {STEP_BACK_MM:g} before it"
             yield Expectation(file, what, STEP_BACK_MM + growth_mm, EXTENT_ALLOWED_MM, "mm", probe)
         else:
-            at = (places[block.tag] + x, _middle(block) + y, cradle.axis_height_mm)
+            at = (places[block.tag] + x, inner + side * REST_MM / 2.0 + y, cradle.axis_height_mm)
             probe = Probe("free_mm", {"at": at, "along": (0.0, 0.0, -1.0), "side": "ahead"})
             under = cradle.axis_height_mm - block.top_mm
             what = f"{block.tag} rest at {word} under the axis"
             yield Expectation(file, what, under, EXTENT_ALLOWED_MM, "mm", probe)
-
-
-def _middle(block: Block) -> float:
-    return sum(block.y_mm) / 2.0
 
 
 def _bores(section: Section, file: str, shrink_mm: float) -> Iterator[Expectation]:

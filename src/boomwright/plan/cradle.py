@@ -19,7 +19,7 @@ from boomwright.plan.cradle_model import CradlePlan, Ground, Held, Section, Span
 from boomwright.plan.joint import Joint, flank_play_mm, joint_box
 from boomwright.plan.outrigger import Group, plan_groups, plan_outriggers, socket_depth_mm
 from boomwright.plan.rails import UNLIMITED, Limit, plan_axis_height, plan_stops
-from boomwright.plan.saddle import all_spans, clipped, free_spans, make_saddles
+from boomwright.plan.saddle import TIE_SLOT_MM, all_spans, clipped, free_spans, make_saddles
 from boomwright.plan.seat import SeatPlan
 from boomwright.plan.sections import Splice, Spread, choose_cuts, inner_span, plan_splice, where
 from boomwright.plan.size import Size
@@ -117,9 +117,7 @@ def _in_sections(ground: Ground, bed_mm: Span) -> tuple[CradlePlan, list[Size], 
     """The cradle parted for a bed of this x and y."""
     clearance = ground.shop.printer.press_clearance_mm
     groups = plan_groups(ground, plan_stops(ground), bed_mm[1])
-    nearest = min((g.face_mm for g in groups), default=None)
-    limit = UNLIMITED if nearest is None else Limit(nearest - socket_depth_mm(clearance), bed_mm[1])
-    layout, sizes, faults = lay_out(ground, limit, groups)
+    layout, sizes, faults = _laid_out(ground, groups, bed_mm[1])
     splice = plan_splice(layout.strip_mm[0], clearance)
     cuts = _cuts(ground, layout, splice, bed_mm[0]) if splice is not None and not faults else None
     if splice is None or cuts is None:
@@ -135,6 +133,18 @@ def _in_sections(ground: Ground, bed_mm: Span) -> tuple[CradlePlan, list[Size], 
     faults = [_no_cut(ground)] if over else budget_faults(cradle, ground.shop)
     sizes += budget_sizes(cradle, ground.shop, [(cut, where(ground, cut)) for cut in cuts])
     return cradle, sizes, faults
+
+
+def _laid_out(ground: Ground, groups: tuple[Group, ...], bed_mm: float) -> tuple[Layout, list[Size], list[Fault]]:
+    """Everything before it is parted; slots for ties that stand past the rails keep clear of outriggers' sockets."""
+    if not groups:
+        return lay_out(ground, UNLIMITED, groups)
+    outer = min(g.face_mm for g in groups) - socket_depth_mm(ground.shop.printer.press_clearance_mm)
+    laid = lay_out(ground, Limit(outer, bed_mm), groups)
+    rails = laid[0].rails
+    if rails is not None and any(s.tie_y_mm[0] > rails[1] for s in laid[0].saddles):
+        return lay_out(ground, Limit(outer - TIE_SLOT_MM[1], bed_mm), groups)
+    return laid
 
 
 def _stem_at(cuts: tuple[float, ...], x_mm: float) -> str:

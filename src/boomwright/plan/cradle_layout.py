@@ -158,8 +158,10 @@ def _arm_plates(layout: Layout, arm: Arm) -> Iterator[Rectangle]:
 
 
 def _arm_labels(layout: Layout, arms: Sequence[Arm]) -> Iterator[Label]:
-    for arm in arms:
-        yield from arm_labels(arm.group, layout.strip_mm[0], arm.numbers)
+    inside = layout.strip_mm[0] - INSIDE_RAIL_MM
+    if all(inside > saddle.outer_half_mm for saddle in layout.saddles):
+        for arm in arms:
+            yield from arm_labels(arm.group, layout.strip_mm[0], arm.numbers)
 
 
 def _dovetails(

@@ -178,9 +178,10 @@ def _piece(ground: Ground, group: Group, side: int, y_mm: Span, number: int) -> 
     for unit, x in group.units:
         tip, radius = max(h.tip_mm for h in unit), max(h.radius_mm for h in unit)
         if start < tip < end:
-            inner, low = tip + slide, ground.height_mm - radius
-            blocks.append(Block(unit[0].tag, "rest", x, mirrored((tip - REST_MM, inner), side), low))
-            stop = mirrored((inner, inner + STOP_MM), side)
+            inner, outer, low = tip + slide, tip + slide + STOP_MM, ground.height_mm - radius
+            # The rest runs on under the stop: two blocks side by side would part when they are drawn for a printer.
+            blocks.append(Block(unit[0].tag, "rest", x, mirrored((tip - REST_MM, outer), side), low))
+            stop = mirrored((inner, outer), side)
             blocks.append(Block(unit[0].tag, "stop", x, stop, ground.height_mm + radius / 2.0))
     return Section(
         f"cradle-outrigger-{number}",

@@ -23,9 +23,12 @@ def free_spans(ground: Ground) -> list[Span]:
     relief = ground.shop.cradle.relief_mm
     kept = [(b.at_mm - b.half_x_mm - relief, b.at_mm + b.half_x_mm + relief) for b in ground.seat.bond_lines]
     kept += [ground.window_mm] if ground.window_mm else []
-    kept.sort()
-    edges = [(-math.inf, ground.seat.start_mm), *kept, (ground.seat.end_mm, math.inf)]
-    return [(a[1], b[0]) for a, b in pairwise(edges) if b[0] - a[1] >= LEAST_SADDLE_MM]
+    free, at = list[Span](), ground.seat.start_mm
+    for low, high in sorted([*kept, (ground.seat.end_mm, math.inf)]):
+        if low - at >= LEAST_SADDLE_MM:
+            free.append((at, low))
+        at = max(at, high)
+    return free
 
 
 def end_spans(ground: Ground, free: Sequence[Span]) -> tuple[list[Span], list[Fault]]:
