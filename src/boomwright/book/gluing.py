@@ -74,9 +74,8 @@ def _join_words(sections: int, outriggers: int) -> str:
     if sections > 1:
         words = (
             f"On one flat board, let the {sections} sections of the cradle down into each other's joints in the order "
-            "of "
+            "of their numbers, faces butting, and screw them to the board. "
         )
-        words += "their numbers, faces butting, and screw them to the board. "
     if outriggers:
         words += f"Set the {counted(outriggers, 'outrigger')} to the rails the same way: they carry the end stops. "
     return words
@@ -89,8 +88,8 @@ def _clean_step(run: Run) -> Step:
         Topic.ADHESIVE,
     )
     return Step(
-        "Take it all apart. Roughen rods and seats where they meet, and wipe them with a solvent that leaves nothing "
-        "behind.",
+        "Take boom and rods out again. Roughen rods and seats where they meet, and wipe them with a solvent that "
+        "leaves nothing behind.",
         "A drop of water spreads on the rod instead of pearling. Do not touch the places again.",
         None,
         caution,
