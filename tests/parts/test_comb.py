@@ -15,6 +15,7 @@ from boomwright.plan.seat import SeatPlan, plan_seat
 from boomwright.shop.profile import Laser, Layers, Shop
 
 SMALL = Shop(laser=Laser(sheet_size_mm=(150.0, 90.0), kerf_mm=0.2, layers=Layers("Schnitt", "Ritz", "Gravur")))
+TURNED = Shop(laser=Laser(sheet_size_mm=(120.0, 400.0), kerf_mm=0.3))
 TALL = replace(LOOP_868, driven=Driven("loop", 62.0, 2.0, "copper", 4.0, perimeter_mm=520.0, shape="square"))
 
 
@@ -49,13 +50,13 @@ def findings(plan, folder, entries):
     return [(e, DXF.measure(readings[e.file], e.probe, [])) for e in wanted]
 
 
-@pytest.mark.parametrize("shop", [Shop(), SMALL], ids=["one sheet", "sections"])
+@pytest.mark.parametrize("shop", [Shop(), SMALL, TURNED], ids=["one sheet", "sections", "turned"])
 @pytest.mark.parametrize("design", [GAUGE, UPRIGHT_868, LOOP_868, CAMERA_FOLDED, TALL], ids=lambda d: d.driven.form)
 def test_every_slot_is_where_and_as_wide_as_planned(design, shop, tmp_path):
     plan = planned(design, shop)
     if plan.comb.left_out:
         assert shop is SMALL
-        assert "mm high, the laser's sheet takes 80" in plan.comb.left_out
+        assert "two conductors stand farther apart than the laser's sheet takes, 87" in plan.comb.left_out
         return
     found = findings(plan, tmp_path, written(plan, tmp_path))
     assert len(found) > 3 * len(design.rods)
@@ -103,7 +104,15 @@ def test_a_shifted_slot_is_named(tmp_path):
 def test_sections_share_a_rod_and_fit_the_sheet():
     sections = planned(GAUGE, SMALL).comb.sections
     assert [[slot.label for slot in section.slots] for section in sections] == [["R", "DE", "DE", "D1"], ["D1", "D2"]]
-    assert all(section.end_mm - section.start_mm <= 140.0 for section in sections)
+    # Margins of 2 kerfs + 1 on both sides, and the kerf: 150 - 2 x 1.4 - 0.2.
+    assert all(section.end_mm - section.start_mm <= 147.0 for section in sections)
+    # Both plates, about 25 high, lie on one sheet of 90.
+    assert [piece.stem for piece in SpacingComb().build(planned(GAUGE, SMALL))] == ["spacing-comb-1"]
+
+
+def test_a_plate_longer_than_the_sheet_is_wide_lies_turned():
+    comb = planned(GAUGE, TURNED).comb
+    assert [(len(comb.sections), place.turned) for place in comb.places] == [(1, True)]
 
 
 def test_an_upright_element_gets_a_slot_for_both_conductors():
@@ -122,8 +131,8 @@ def test_a_loop_taller_than_the_plate_is_passed_under():
 def test_reasons_to_have_no_comb():
     alone = replace(GAUGE, rods=(), driven=Driven("straight", 62.0, 2.0, "copper", 4.0, length_mm=158.0))
     assert planned(alone, Shop()).comb.left_out == "fewer than two conductors give a place to compare"
-    far = Shop(laser=Laser(sheet_size_mm=(70.0, 400.0)))
-    assert "farther apart than the laser's sheet takes, 60 mm" in planned(GAUGE, far).comb.left_out
+    far = Shop(laser=Laser(sheet_size_mm=(70.0, 60.0)))
+    assert "farther apart than the laser's sheet takes, 67.2 mm" in planned(GAUGE, far).comb.left_out
     stubby = replace(GAUGE, rods=(*GAUGE.rods[:2], replace(GAUGE.rods[2], length_mm=16.0)))
     assert planned(stubby, Shop()).comb.left_out == "a conductor is too short to pass a plate beside the boom"
     assert SpacingComb().left_out(planned(alone, Shop())) is not None

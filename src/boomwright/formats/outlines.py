@@ -159,6 +159,23 @@ class DxfReading:
         return self.parts_by_layer[layer]
 
 
+def outlines_of(reading: DxfReading, arguments: Arguments) -> list[Outline]:
+    """Outlines on `layer` (default all); with `plate` those drawn in its box, moved into its own frame.
+
+    plate   {"box": [x0, y0, x1, y1], "frame": 4 x 4}, the frame a turn and shift of the sheet
+    """
+    found, plate = reading.on(arguments.get("layer")), arguments.get("plate")
+    if plate is None:
+        return found
+    x0, y0, x1, y1 = map(float, plate["box"])
+    inside = [o for o in found if all(x0 <= x <= x1 and y0 <= y <= y1 for x, y, _ in o.vertices)]
+    (a, b, _, c), (d, e, _, f) = plate["frame"][:2]
+    return [
+        Outline(tuple((a * x + b * y + c, d * x + e * y + f, k) for x, y, k in o.vertices), o.closed, o.layer)
+        for o in inside
+    ]
+
+
 def measure_audit_errors(reading: DxfReading, arguments: Arguments, also: Sequence[Any]) -> float:
     """Number of errors that ezdxf's audit found, those it could mend included."""
     return float(reading.audit_errors)
@@ -208,22 +225,25 @@ def measure_unknown_layers(reading: DxfReading, arguments: Arguments, also: Sequ
 
 
 def measure_extent(reading: DxfReading, arguments: Arguments, also: Sequence[Any]) -> float:
-    """Extent of the outlines on `layer` (default all) [mm], `quantity` as `min_x_mm`, `size_y_mm`; exact for arcs."""
-    low, high = _box(reading, arguments.get("layer"))
+    """Extent of the outlines on `layer` (default all) [mm], `quantity` as `min_x_mm`, `size_y_mm`; exact for arcs.
+
+    plate   optional, as in `outlines_of`
+    """
+    low, high = _box(reading, arguments)
     return extent_of(low, high, str(arguments["quantity"]))
 
 
 def measure_outside(reading: DxfReading, arguments: Arguments, also: Sequence[Any]) -> float:
     """How far the drawing leaves a sheet of `size` (x, y) that begins at (0, 0) [mm]; 0 when it is inside."""
-    low, high = _box(reading, None)
+    low, high = _box(reading, {})
     size = np.array([*arguments["size"], 0.0])
     return float(max(0.0, *(-low[:2]), *(high - size)[:2]))
 
 
-def _box(reading: DxfReading, layer: Any) -> tuple[Any, Any]:
-    segments = [segment for outline in reading.on(layer) for segment in outline.segments]
+def _box(reading: DxfReading, arguments: Arguments) -> tuple[Any, Any]:
+    segments = [segment for outline in outlines_of(reading, arguments) for segment in outline.segments]
     if not segments:
-        raise MeasureError(f"{reading.path.name}: nothing is drawn on {layer or 'it'}")
+        raise MeasureError(f"{reading.path.name}: nothing is drawn on {arguments.get('layer') or 'it'}")
     reaches = np.array([(segment.reach(0), segment.reach(1), (0.0, 0.0)) for segment in segments])
     return reaches[:, :, 0].min(axis=0), reaches[:, :, 1].max(axis=0)
 

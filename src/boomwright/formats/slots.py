@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from boomwright.errors import MeasureError
-from boomwright.formats.outlines import DxfReading, Outline, Segment
+from boomwright.formats.outlines import DxfReading, Outline, Segment, outlines_of
 
 FARTHEST_MM = 5.0
 """How far from the asked place a slot may be found, so that a shifted one is measured, not missed."""
@@ -32,13 +32,14 @@ class Slot:
 def measure_slot(reading: DxfReading, arguments: Mapping[str, Any], also: Sequence[Any]) -> float:
     """Of the slot nearest to `at_mm` on `layer`: `quantity` at_mm, width_mm or depth_mm, with `kerf_mm` undone.
 
+    plate   optional: on one plate of several, as in `outlines_of`
     y_mm    optional: only slots between whose mouth and end this y lies, where several stand one above the other
     """
     at, kerf = float(arguments["at_mm"]), float(arguments.get("kerf_mm", 0.0))
     y = arguments.get("y_mm")
     slots = [
         slot
-        for outline in reading.on(arguments.get("layer"))
+        for outline in outlines_of(reading, arguments)
         for slot in find_slots(outline)
         if y is None or min(slot.mouth_mm, slot.end_mm) <= y <= max(slot.mouth_mm, slot.end_mm)
     ]

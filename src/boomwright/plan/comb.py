@@ -13,6 +13,7 @@ from boomwright.design.centreline import loop_drop_mm, straight_half_mm
 from boomwright.design.model import Design
 from boomwright.plan.seat import SeatPlan
 from boomwright.plan.size import Size
+from boomwright.shop.nesting import Place, longest_mm, nest, sheet_room_mm
 from boomwright.shop.profile import Shop
 
 CLEARANCE_MM = 0.2
@@ -33,7 +34,6 @@ TALLEST_SLOT_MM = 60.0
 TAG_HEIGHT_MM = 4.0
 TAG_ROOM_MM = 1.5
 TITLE_HEIGHT_MM = 4.0
-SHEET_MARGIN_MM = 5.0
 
 
 @dataclass(frozen=True)
@@ -80,6 +80,7 @@ class CombSection:
 class CombPlan:
     """All plates; `top_mm` and `bottom_mm` are their upper and lower edge.
 
+    places        where each plate is cut
     passed_under  tags of conductors too high for a slot
     left_out      why there is no comb, in words; None when there is one
     """
@@ -90,6 +91,12 @@ class CombPlan:
     tag_rows_mm: float
     passed_under: tuple[str, ...]
     left_out: str | None = None
+    places: tuple[Place, ...] = ()
+
+    @property
+    def sheets(self) -> int:
+        """Number of sheets."""
+        return 1 + max((place.sheet for place in self.places), default=-1)
 
 
 def plan_comb(design: Design, shop: Shop, seat: SeatPlan) -> tuple[CombPlan, list[Size]]:
@@ -106,13 +113,15 @@ def plan_comb(design: Design, shop: Shop, seat: SeatPlan) -> tuple[CombPlan, lis
     tag_rows = max(slot.end_mm for slot in slots) + TAG_ROOM_MM
     rows = 1 + max(slot.row for slot in slots)
     top = tag_rows + rows * (TAG_HEIGHT_MM + TAG_ROOM_MM) + TITLE_HEIGHT_MM + 2.0 * TAG_ROOM_MM
-    room_x, room_y = (size - 2.0 * SHEET_MARGIN_MM for size in shop.laser.sheet_size_mm)
-    if top - bottom > room_y:
-        return _none(f"its plate is {top - bottom:.4g} mm high, the laser's sheet takes {room_y:g}", passed), []
-    sections = _sections(slots, room_x)
+    longest = longest_mm(top - bottom, shop.laser)
+    if longest <= 0.0:
+        most = max(sheet_room_mm(shop.laser))
+        return _none(f"its plate is {top - bottom:.4g} mm high, the laser's sheet takes {most:.5g}", passed), []
+    sections = _sections(slots, longest)
     if sections is None:
-        return _none(f"two conductors stand farther apart than the laser's sheet takes, {room_x:g} mm", passed), []
-    plan = CombPlan(sections, top, bottom, tag_rows, passed)
+        return _none(f"two conductors stand farther apart than the laser's sheet takes, {longest:.5g} mm", passed), []
+    places = nest([(s.end_mm - s.start_mm, top - bottom) for s in sections], shop.laser, turn=False)
+    plan = CombPlan(sections, top, bottom, tag_rows, passed, places=places)
     return plan, _sizes(plan, design)
 
 

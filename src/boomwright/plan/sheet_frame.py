@@ -21,7 +21,7 @@ from boomwright.plan.sheet_plate import (
     spans_meet,
 )
 from boomwright.plan.sheet_splice import cut_line, feet_of
-from boomwright.shop.nesting import fits_sheet, sheet_room_mm
+from boomwright.shop.nesting import fits_sheet, longest_mm, sheet_room_mm
 from boomwright.shop.profile import Laser
 
 EDGE_MM = 4.0
@@ -257,7 +257,7 @@ def rail_pieces(lines: Lines, feet: list[Span], crossing: list[Standing], laser:
     blocks = [one.reach(t) for one in crossing]
     forbidden += [(x[0] - half - 2.0, x[1] + half + 2.0) for x, y, _ in blocks if _in_y(y, beside)]
     height = lines.axis_height_mm
-    longest = _longest(height, laser)
+    longest = longest_mm(height, laser)
 
     def holds(piece: Span) -> bool:
         return any(piece[0] <= low and high <= piece[1] for low, high in feet)
@@ -324,7 +324,7 @@ def base_pieces(lines: Lines, rooms: list[BaseRoom], standing: list[Standing], l
 def _cut_base(rect: Rect, blocks: list[Box], lines: Lines, laser: Laser) -> tuple[list[Span], float]:
     """The pieces along y, and x of the fishplates' rear faces."""
     u, v, t, half = rect.u, rect.v, lines.sheet_mm, lines.fishplate_mm / 2.0
-    longest = _longest(u[1] - u[0], laser)
+    longest = longest_mm(u[1] - u[0], laser)
     middle = (u[0] + u[1] - t) / 2.0
     for at in (middle, middle - 8.0, middle + 8.0, u[0] + EDGE_MM, u[1] - EDGE_MM - t):
         forbidden = [(y[0] - 2.5, y[1] + 2.5) for _, y, _ in blocks]
@@ -335,12 +335,6 @@ def _cut_base(rect: Rect, blocks: list[Box], lines: Lines, laser: Laser) -> tupl
             return pieces, at
     need = f"a base plate {u[1] - u[0]:.4g} mm wide and {v[1] - v[0]:.4g} long cannot be cut into pieces that fit"
     raise TooLargeError(need)
-
-
-def _longest(width_mm: float, laser: Laser) -> float:
-    """The longest piece of this width that the sheet takes [mm]; 0 where it takes none."""
-    room = sheet_room_mm(laser)
-    return max((a for a, b in (room, room[::-1]) if width_mm <= b + 1e-9), default=0.0)
 
 
 def _sided(y_mm: Span, side: float) -> Span:

@@ -45,10 +45,17 @@ def fits_sheet(size_mm: Extent, laser: Laser) -> bool:
     return any(x <= room[0] + 1e-9 and y <= room[1] + 1e-9 for x, y in (size_mm, size_mm[::-1]))
 
 
-def nest(sizes_mm: Sequence[Extent], laser: Laser) -> tuple[Place, ...]:
+def longest_mm(width_mm: float, laser: Laser) -> float:
+    """The longest part of this width that the sheet takes, as cut [mm]; 0 where it takes none."""
+    room = sheet_room_mm(laser)
+    return max((a for a, b in (room, room[::-1]) if width_mm <= b + 1e-9), default=0.0)
+
+
+def nest(sizes_mm: Sequence[Extent], laser: Laser, turn: bool = True) -> tuple[Place, ...]:
     """A place for every part, in the order of the parts.
 
     sizes_mm  sizes (x, y) of the parts as cut [mm], each one such that `fits_sheet` holds
+    turn      whether parts that fit as they are may be turned too
 
     Contours are drawn half a kerf outside the parts; drawn rectangles keep `sheet_margin_mm` from each other and from
     the sheet's edge. Of several ways to pack, the first of those with the fewest sheets. Raises ValueError for a part
@@ -56,12 +63,13 @@ def nest(sizes_mm: Sequence[Extent], laser: Laser) -> tuple[Place, ...]:
     """
     if not all(fits_sheet(size, laser) for size in sizes_mm):
         raise ValueError("a part is larger than the sheet")
-    gap = sheet_margin_mm(laser)
+    gap, room = sheet_margin_mm(laser), sheet_room_mm(laser)
+    turn = turn or any(x > room[0] + 1e-9 or y > room[1] + 1e-9 for x, y in sizes_mm)
     padded = [tuple(_up(side + laser.kerf_mm + gap) for side in size) for size in sizes_mm]
     bin_size = tuple(math.floor(round((side - gap) * UNITS_PER_MM, 3)) for side in laser.sheet_size_mm)
     best: list[Any] = []
     for algorithm in _algorithms():
-        packed = _pack(padded, bin_size, algorithm)
+        packed = _pack(padded, bin_size, algorithm, turn)
         if len(packed) == len(padded) and (not best or _sheets(packed) < _sheets(best)):
             best = packed
     places: list[Place | None] = [None] * len(padded)
@@ -85,11 +93,11 @@ def _algorithms() -> tuple[Any, ...]:
     return MaxRectsBssf, MaxRectsBaf, MaxRectsBl
 
 
-def _pack(padded: Sequence[tuple[int, ...]], bin_size: tuple[int, ...], algorithm: Any) -> list[Any]:
+def _pack(padded: Sequence[tuple[int, ...]], bin_size: tuple[int, ...], algorithm: Any, turn: bool) -> list[Any]:
     """Rows of (sheet, x, y, width, height, index), the large parts first."""
     from rectpack import SORT_LSIDE, PackingBin, PackingMode, newPacker
 
-    packer = newPacker(PackingMode.Offline, PackingBin.BBF, algorithm, SORT_LSIDE, rotation=True)
+    packer = newPacker(PackingMode.Offline, PackingBin.BBF, algorithm, SORT_LSIDE, rotation=turn)
     packer.add_bin(*bin_size, count=len(padded))
     for index, (width, height) in enumerate(padded):
         packer.add_rect(width, height, rid=index)
