@@ -89,9 +89,10 @@ class Thread:
 
 @dataclass(frozen=True)
 class RefusedSheet:
-    """A sheet material no laser cutter should cut, and why."""
+    """A sheet material no laser cutter should cut, and why; `also` are the trade's other names for it."""
 
     name: str
+    also: tuple[str, ...]
     reason: str
     source: str
     provenance: str
@@ -186,15 +187,28 @@ def threads() -> Catalogue[Thread]:
 def refused_sheets() -> tuple[RefusedSheet, ...]:
     """Every sheet material that workshops' laser rules refuse."""
     return tuple(
-        RefusedSheet(row["material"], row["reason"], row["source"], row["provenance"])
+        RefusedSheet(
+            row["material"],
+            tuple(name.strip() for name in row["also"].split(";")),
+            row["reason"],
+            row["source"],
+            row["provenance"],
+        )
         for row in _rows("laser_refused.csv")
     )
 
 
 def refused_sheet(material: str) -> RefusedSheet | None:
-    """The refusal that a sheet's name falls under ("clear pvc sheet" is PVC), None when it may be cut."""
-    words = f" {' '.join(re.split(r'[^0-9a-z]+', material.lower()))} "
-    return next((sheet for sheet in refused_sheets() if f" {sheet.name.lower()} " in words), None)
+    """The refusal that a sheet's name falls under ("clear pvc sheet" is PVC), None when it may be cut.
+
+    Names go by whole words, whatever stands between them, and include those of `RefusedSheet.also` (common practice).
+    """
+    words = _words(material)
+    return next((s for s in refused_sheets() if any(_words(name) in words for name in (s.name, *s.also))), None)
+
+
+def _words(name: str) -> str:
+    return f" {' '.join(re.split(r'[^0-9a-z]+', name.lower()))} "
 
 
 def general_tolerance_mm(length_mm: float, grade: Grade = "fine") -> float:
