@@ -80,19 +80,15 @@ def design_and_shop(recipe: Recipe) -> tuple[Design, Shop]:
         assert recipe.design is not None
         document = parse(recipe.design, recipe.design_file)
         if variant.rescale is not None:
+            from boomwright.search.carry import Target
             from boomwright.search.rescale import rescale
 
             design = read_design(recipe.design, recipe.design_file)
-            rescaled = rescale(design, variant.rescale["to_mhz"], *_stock(variant.rescale), shop=shop)
-            document = _document(rescaled.design)
+            document = _document(rescale(design, Target(**variant.rescale), shop).design)
     document["name"] = variant.name
     for path, value in variant.changes.items():
         _set(document, path, value, f"{variant.place}.set")
     return design_from(document, recipe.design_file or f"{variant.name} (proposed)"), shop
-
-
-def _stock(keys: dict[str, Any]) -> tuple[float | None, float | None]:
-    return keys["rod_mm"], keys["boom_width_mm"]
 
 
 def _proposed(variant: Variant, shop: Shop) -> Design:
