@@ -59,7 +59,9 @@ def test_what_the_equations_leave_out_is_said():
         "expect the built antenna to read a little lower",
         "adhesive, resin and mould are not in the equations",
     )
-    assert "(metal)" in design_warnings(replace(GAUGE, boom=replace(GAUGE.boom, material="aluminium")))[0]
+    for metal in ("aluminium", "ideal"):
+        warning = design_warnings(replace(GAUGE, boom=replace(GAUGE.boom, material=metal)))[0]
+        assert "(metal)" in warning and warning.endswith("read a little higher")
     assert design_warnings(LONE) == ()
 
 

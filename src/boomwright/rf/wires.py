@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from boomwright.data.tables import conductors, materials
+from boomwright.data.tables import conductor_names, conductors, materials
 from boomwright.design.model import Design, Driven
 from boomwright.design.model import Rod as DesignRod
 from boomwright.rf.conductors import Coat, Conductor, Folded, Loop, Rod, Wires
@@ -87,10 +87,11 @@ def design_warnings(design: Design) -> tuple[str, ...]:
     """What of a design the equations leave out."""
     found = []
     if design.boom is not None:
-        metal = materials()[design.boom.material].permittivity is None
-        kind = "metal" if metal else "dielectric"
+        metal = design.boom.material in conductor_names()
+        # A dielectric slows the wave along the rods; metal across their middles shortens them (common practice).
+        kind, way = ("metal", "higher") if metal else ("dielectric", "lower")
         shape = f"{design.boom.width_mm:g} mm {design.boom.section} {design.boom.material} boom"
-        found.append(f"the {shape} ({kind}) is not in the equations: expect the built antenna to read a little lower")
+        found.append(f"the {shape} ({kind}) is not in the equations: expect the built antenna to read a little {way}")
         found.append("adhesive, resin and mould are not in the equations")
     coated = [rod.tag for rod in design.rods if rod.coat_mm > 0.0]
     coated += [FED_TAG] if design.driven.coat_mm > 0.0 else []
