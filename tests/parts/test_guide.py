@@ -1,6 +1,7 @@
 """The groove guide: on the boom a file of the groove's width comes to rest at the groove's bottom."""
 
 from dataclasses import replace
+from itertools import pairwise
 
 import pytest
 import samples
@@ -29,7 +30,7 @@ def test_the_file_rests_where_the_groove_ends(design):
     guide = planned(design)
     seats, _, _ = plan_seat(design, design.boom, design.seat)
     (section,) = guide.sections
-    solid = _shape(guide, section, NOMINAL)
+    solid = _shape(guide, 1, NOMINAL)
     assert solid.isValid()
     boom = box(
         (guide.boom_start_mm - section.start_mm, 500.0),
@@ -48,8 +49,7 @@ def test_the_file_rests_where_the_groove_ends(design):
 
 def test_growth_is_taken_from_every_face():
     guide = planned(samples.GAUGE)
-    (section,) = guide.sections
-    nominal, drawn = (_shape(guide, section, o) for o in (NOMINAL, Offsets(outline_growth_mm=0.12)))
+    nominal, drawn = (_shape(guide, 1, o) for o in (NOMINAL, Offsets(outline_growth_mm=0.12)))
     assert common(drawn, nominal) == pytest.approx(drawn.Volume(), rel=1e-9)
     assert drawn.Volume() < nominal.Volume()
 
@@ -70,14 +70,31 @@ def test_sections_share_a_seat_and_fit_the_bed():
     assert all(s.end_mm - s.start_mm <= 220.0 for s in sections)
 
 
-def test_seats_too_far_apart_for_the_bed():
-    shop = Shop(printer=Printer(bed_mm=(100.0, 100.0, 100.0)))
+@pytest.mark.parametrize("bed_mm", [40.0, 60.0, 100.0, 150.0])
+@pytest.mark.parametrize("design", [LONG, samples.TUBE_915, samples.MIXED_1296], ids=lambda d: d.name)
+def test_seats_farther_apart_than_the_bed_are_reached_by_sections_that_butt(design, bed_mm):
+    sections = planned(design, Shop(printer=Printer(bed_mm=(bed_mm, bed_mm, 100.0)))).sections
+    assert all(0.0 < s.end_mm - s.start_mm <= bed_mm + 1e-9 for s in sections)
+    seen = dict.fromkeys(c.tag for s in sections for c in s.cuts)
+    seats, _, _ = plan_seat(design, design.boom, design.seat)
+    assert list(seen) == [one.tag for one in (*seats.grooves, *seats.holes)]
+    for before, after in pairwise(sections):
+        butts = after.start_mm == pytest.approx(before.end_mm)
+        laps = bool(after.cuts) and after.cuts[0] == (before.cuts or (None,))[-1]
+        assert butts != laps
+    for section in sections:
+        for cut in section.cuts:
+            assert section.start_mm < cut.at_mm - cut.width_mm / 2.0 < cut.at_mm + cut.width_mm / 2.0 < section.end_mm
+
+
+def test_a_bed_shorter_than_one_seat():
+    shop = Shop(printer=Printer(bed_mm=(20.0, 20.0, 100.0)))
     reason = GrooveGuide().left_out(make_plan(LONG, shop))
-    assert reason == "two seats stand farther apart than the bed takes, 100 mm: use the wrap template"
+    assert reason == "a section over one seat is 19.2 mm long, the bed 20 mm: use the wrap template"
 
 
 @pytest.mark.parametrize("design", [samples.GAUGE, samples.TUBE_915], ids=lambda d: d.name)
 def test_no_face_hangs_over_more_than_45_degrees(design):
     guide = planned(design)
-    for face in _shape(guide, guide.sections[0], NOMINAL).Faces():
+    for face in _shape(guide, 1, NOMINAL).Faces():
         assert -face.normalAt().z <= 0.7072 or face.Center().z < 1e-6

@@ -27,7 +27,7 @@ class GrooveGuide(Part):
     processes = ("print",)
 
     def left_out(self, plan: Plan) -> str | None:
-        """No seats, or seats too far apart for the bed."""
+        """No seats, or a bed too short for one."""
         return plan_guide(plan.design, plan.boom, plan.wished_seat, plan.shop)[0].left_out
 
     def build(self, plan: Plan) -> tuple[Piece, ...]:
@@ -35,8 +35,8 @@ class GrooveGuide(Part):
         guide, _ = plan_guide(plan.design, plan.boom, plan.wished_seat, plan.shop)
         offsets = _offsets(plan, guide)
         return tuple(
-            printed_piece(f"{self.name}-{number}", partial(_shape, guide, section), offsets)
-            for number, section in enumerate(guide.sections, 1)
+            printed_piece(f"{self.name}-{number}", partial(_shape, guide, number), offsets)
+            for number in range(1, len(guide.sections) + 1)
         )
 
     def expect(self, plan: Plan) -> tuple[Expectation, ...]:
@@ -80,7 +80,7 @@ def _expect(guide: GuidePlan, section: GuideSection, file: str, drawn: Offsets) 
     x = section.end_mm - section.start_mm - 2.0
     at = (x, 0.0, (guide.roof_mm + guide.top_mm) / 2.0)
     free("boom's channel", 2.0 * (guide.inner_half_mm + g), at, (0, 1, 0), "both")
-    if section.has_stop:
+    if section.has_stop and section.cuts:
         first = section.cuts[0]
         reach = first.at_mm - guide.boom_start_mm
         at = (first.at_mm - section.start_mm, 0.0, guide.roof_mm + 1.0)
@@ -94,9 +94,10 @@ def _point_mm(one: GuideCut) -> float:
     return one.depth_mm - r + math.sqrt(2.0) * r
 
 
-def _shape(guide: GuidePlan, section: GuideSection, offsets: Offsets) -> Shape:
+def _shape(guide: GuidePlan, number: int, offsets: Offsets) -> Shape:
     import shapely
 
+    section = guide.sections[number - 1]
     g, length, outer = offsets.outline_growth_mm, section.end_mm - section.start_mm, guide.outer_half_mm
     body = chamfered_plate(shapely.box(0.0, -outer, length, outer), guide.roof_mm, g)
     low, x = 0.5 * guide.roof_mm, (g, length - g)
@@ -106,7 +107,7 @@ def _shape(guide: GuidePlan, section: GuideSection, offsets: Offsets) -> Shape:
         inside = guide.inner_half_mm + 1.0
         added.append(box((g, END_STOP_MM - g), (-inside, inside), (low, guide.top_mm)))
     tools = [_tool(guide, one, one.at_mm - section.start_mm, offsets) for one in section.cuts]
-    return cut(unite(body, added), tools + label_tools(guide_labels(guide, section)))
+    return cut(unite(body, added), tools + label_tools(guide_labels(guide, number)))
 
 
 def _tool(guide: GuidePlan, one: GuideCut, x_mm: float, offsets: Offsets) -> Shape:
