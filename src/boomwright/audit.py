@@ -22,6 +22,7 @@ from boomwright.electrical import Electrical, read_back
 from boomwright.errors import AccessError, Fault, InputFault, MeasureError
 from boomwright.formats.catalogue import FORMATS
 from boomwright.judging import DIGITS, Finding, bench_for, judge_all
+from boomwright.manifest import BOOK_PROCESS
 from boomwright.manifest import FILE as MANIFEST_FILE
 from boomwright.manifest import Manifest, read_manifest, sum_of
 from boomwright.parts.catalogue import PARTS
@@ -95,7 +96,7 @@ def _expectations(plan: Plan, manifest: Manifest) -> Iterable[Expectation]:
         if name in PARTS and PARTS[name].left_out(plan) is None:
             yield from PARTS[name].expect(plan)
     for entry in manifest.entries:
-        if entry.format in FORMATS:
+        if entry.format in FORMATS and entry.process != BOOK_PROCESS:
             yield from FORMATS[entry.format].expect(entry, plan.shop)
 
 

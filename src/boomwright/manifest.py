@@ -17,6 +17,8 @@ from boomwright.plan.size import Size
 
 FILE = "manifest.json"
 SCHEMA = 1
+BOOK_PROCESS = "book"
+"""Of files that people read: they have a sum, and nothing in them is measured."""
 
 
 @dataclass(frozen=True)

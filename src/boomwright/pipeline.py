@@ -8,6 +8,7 @@ from pathlib import Path
 
 from boomwright.audit import DESIGN_FILE, SHOP_FILE, Audit, audit_folder
 from boomwright.audit import FILE as AUDIT_FILE
+from boomwright.book import NAME as BOOK
 from boomwright.crew import crew
 from boomwright.design.model import Design
 from boomwright.design.tomlfile import load_design, write_design
@@ -106,6 +107,12 @@ def make_design(
         progress("measuring the files")
         audit = audit_folder(folder, executor)
         (folder / AUDIT_FILE).write_text(audit.as_json(), "utf-8")
+        if not only or BOOK in only:
+            from boomwright.book.binding import write_book
+
+            progress("writing the build book")
+            entries += write_book(folder, plan, prediction, manifest, audit)
+            manifest = write_manifest(folder, entries, manifest.parts, left_out, plan.sizes)
         progress("")
     return Made(target, plan, manifest, audit, prediction)
 
@@ -117,10 +124,10 @@ def build_part(name: str, plan: Plan, folder: Path) -> list[FileEntry]:
 
 def _chosen(only: Sequence[str]) -> list[Part]:
     try:
-        wanted = {PARTS[name].name for name in only}
+        wanted = {PARTS[name].name for name in only if name != BOOK}
     except CatalogueError as error:
         raise InputFault([Fault("--only", str(error), "give a name that `boomwright show parts` lists")]) from None
-    return [part for part in PARTS if not wanted or part.name in wanted or part.name == ALWAYS]
+    return [part for part in PARTS if not only or part.name in wanted or part.name == ALWAYS]
 
 
 def _in_files(fault: InputFault, design_path: Path, shop_path: Path | None) -> InputFault:

@@ -1,1 +1,4 @@
-"""The build book: what a builder works from. Chapters are content without layout, one file each."""
+"""The build book."""
+
+NAME = "build-book"
+PURPOSE = "what to buy, cut, print, glue, solder and measure, step by step, with the figures of this run"
