@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 FINE = 2
-"""Samples a pixel, along each side."""
+"""Samples a pixel, along each side; `picture` adds four of them up."""
 
 BATCH = 2_000_000
 """Samples worked on at a time, so that memory stays small."""
@@ -75,8 +75,10 @@ class Sheet:
     def depth(self) -> NDArray[np.float32]:
         """Depth of what stands at every sample, minus infinity where there is nothing, (height, width)."""
         canvas = self.canvas
-        level = (self._keys >> OWNER_BITS) * ((canvas.near - canvas.far) / (DEPTH_STEPS - 1.0)) + canvas.far
-        found = np.where(self._keys >= 0, level, -np.inf).astype(np.float32)
+        found = np.full(canvas.width * canvas.height, -np.inf, dtype=np.float32)
+        there = np.flatnonzero(self._keys >= 0)
+        level = (self._keys[there] >> OWNER_BITS) * ((canvas.near - canvas.far) / (DEPTH_STEPS - 1.0))
+        found[there] = level + canvas.far
         return found.reshape(canvas.height, canvas.width)
 
     def draw(
@@ -102,13 +104,18 @@ class Sheet:
 
     def picture(self) -> Colours:
         """The picture, (height, width, 3), each pixel the mean of its samples."""
-        shades = np.concatenate([self._shades, np.array(self._inks, dtype=np.uint8)])
-        index = np.where(self._keys >= 0, self._keys & ((1 << OWNER_BITS) - 1), len(self._shades))
-        ink = self._ink.ravel().astype(np.int64)
-        index = np.where(ink > 0, len(self._shades) + ink, index)
-        fine = shades[index].reshape(self.canvas.height // FINE, FINE, self.canvas.width // FINE, FINE, 3)
-        total = fine[:, 0].astype(np.uint16) + fine[:, 1]
-        return ((total[:, :, 0] + total[:, :, 1] + FINE) // FINE**2).astype(np.uint8)
+        shades = np.concatenate([self._shades, np.array(self._inks, dtype=np.uint8)]).astype(np.uint32)
+        # Ten bits a channel hold the sum of four samples: all three are added in one number.
+        packed = (shades[:, 0] << 20) | (shades[:, 1] << 10) | shades[:, 2]
+        index = (self._keys & ((1 << OWNER_BITS) - 1)).astype(np.int32)
+        index[self._keys < 0] = len(self._shades)
+        inked = np.flatnonzero(self._ink)
+        index[inked] = self._ink.ravel()[inked].astype(np.int32) + len(self._shades)
+        fine = index.reshape(self.canvas.height, self.canvas.width)
+        samples = [packed[fine[down::FINE, right::FINE]] for down in range(FINE) for right in range(FINE)]
+        total = sum(samples[1:], samples[0])
+        channels = [(((total >> shift) & 1023) + 2) >> 2 for shift in (20, 10, 0)]
+        return np.stack(channels, axis=-1).astype(np.uint8)
 
 
 class _Spans:
@@ -116,18 +123,17 @@ class _Spans:
 
     def __init__(self, corners: Points, size: Points, canvas: Canvas) -> None:
         order = np.argsort(corners[:, :, 1], axis=1)
-        top, middle, low = (corners[np.arange(len(corners)), order[:, i]] for i in range(3))
-        start = np.clip(np.ceil(top[:, 1] - 0.5), 0, canvas.height).astype(np.int64)
-        stop = np.clip(np.ceil(low[:, 1] - 0.5), 0, canvas.height).astype(np.int64)
+        (x0, y0), (x1, y1), (x2, y2) = (corners[np.arange(len(corners)), order[:, i], :2].T for i in range(3))
+        start = np.clip(np.ceil(y0 - 0.5), 0, canvas.height).astype(np.int64)
+        stop = np.clip(np.ceil(y2 - 0.5), 0, canvas.height).astype(np.int64)
         count = np.maximum(stop - start, 0)
         which = np.repeat(np.arange(len(corners)), count)
         row = np.arange(len(which)) - np.repeat(np.cumsum(count) - count, count) + start[which]
         y = row + 0.5
-        long = _crossing(top[which], low[which], y)
-        upper = y < middle[which, 1]
-        bent = _crossing(
-            np.where(upper[:, None], top[which], middle[which]), np.where(upper[:, None], middle[which], low[which]), y
-        )
+        long = x0[which] + _slope(x2 - x0, y2 - y0)[which] * (y - y0[which])
+        above = x1[which] + _slope(x1 - x0, y1 - y0)[which] * (y - y1[which])
+        below = x1[which] + _slope(x2 - x1, y2 - y1)[which] * (y - y1[which])
+        bent = np.where(y < y1[which], above, below)
         first = np.clip(np.ceil(np.minimum(long, bent) - 0.5), 0, canvas.width).astype(np.int64)
         last = np.clip(np.ceil(np.maximum(long, bent) - 0.5), 0, canvas.width).astype(np.int64)
         some = last > first
@@ -141,11 +147,8 @@ class _Spans:
         self.least, self.most = corners[:, :, 2].min(axis=1)[t], corners[:, :, 2].max(axis=1)[t]
 
 
-def _crossing(start: Points, end: Points, y: Points) -> Points:
-    """Where lines from start to end cross a height."""
-    rise = end[:, 1] - start[:, 1]
-    share = np.divide(y - start[:, 1], rise, out=np.zeros_like(y), where=rise != 0.0)
-    return np.asarray(start[:, 0] + share * (end[:, 0] - start[:, 0]))
+def _slope(run: Points, rise: Points) -> Points:
+    return np.divide(run, rise, out=np.zeros_like(run), where=rise != 0.0)
 
 
 def farthest_near_by(depth: NDArray[np.float32]) -> NDArray[np.float32]:
@@ -162,7 +165,7 @@ def png(picture: Colours) -> bytes:
     rows = np.zeros((height, width + 1), dtype=np.uint8)
     rows[:, 1:] = index.reshape(height, width)
     head = struct.pack(">IIBBBBB", width, height, 8, 3, 0, 0, 0)
-    parts = ((b"IHDR", head), (b"PLTE", palette.tobytes()), (b"IDAT", zlib.compress(rows.tobytes(), 9)), (b"IEND", b""))
+    parts = ((b"IHDR", head), (b"PLTE", palette.tobytes()), (b"IDAT", zlib.compress(rows.tobytes(), 6)), (b"IEND", b""))
     return b"\x89PNG\r\n\x1a\n" + b"".join(_chunk(kind, data) for kind, data in parts)
 
 
