@@ -1,0 +1,1 @@
+"""The 3D view of the build book."""
