@@ -27,7 +27,7 @@ LEAST_FOOT_MM = 3.0
 FEET_WISHES_MM = ((2.0, FOOT_MM), (1.0, FOOT_MM), (1.0, 5.0), (1.0, LEAST_FOOT_MM))
 """From a rail's end to its outermost foot, and the width of a foot: the first that leaves room for enough feet."""
 
-FEET_EVERY_MM, SPREADERS_EVERY_MM = 80.0, 250.0
+FEET_EVERY_MM, SPREADERS_EVERY_MM, SPREADERS_APART_MM = 80.0, 250.0, 100.0
 MOST_SPREADER_MM, BRACKET_MM = 300.0, 40.0
 OVER_BASE_MM = 3.0
 """Sheet below the holes of a rail."""
@@ -115,7 +115,9 @@ def _spreader_places(lines: Lines, rooms: list[BaseRoom], whole: bool) -> list[f
     if lines.window_mm is not None:
         taken.append((lines.window_mm[0] - clear, lines.window_mm[1] + clear))
     found: list[float] = []
-    for room in rooms:
+    for number, room in enumerate(rooms, 1):
+        # Of many sleepers not every one needs a spreader: rails between them stay free for joints.
+        apart = SPREADERS_APART_MM if 1 < number < len(rooms) else t + clear
         low = max(room.rect.u[0] + clear, lines.rail_x_mm[0] + clear)
         high = min(room.rect.u[1] - clear, lines.rail_x_mm[1] - clear)
         free = [s for s in free_spans((low, high), taken) if s[1] - s[0] >= t] if high - low >= t else []
@@ -125,7 +127,7 @@ def _spreader_places(lines: Lines, rooms: list[BaseRoom], whole: bool) -> list[f
             targets = [(low + high) / 2.0 + 10.0]
         for target in targets if free else []:
             at = _nearest(free, target, t)[0]
-            if all(abs(at - other) > t + clear for other in found):
+            if all(abs(at - other) > apart for other in found):
                 found.append(at)
     return sorted(found)
 
