@@ -2,6 +2,7 @@
 
 import math
 from dataclasses import replace
+from functools import cache
 
 import pytest
 from samples import CAMERA, CAMERA_FOLDED, FITTING, GAUGE, LOOP_868, MIXED_1296, TUBE_915, UPRIGHT_868, rod
@@ -28,6 +29,7 @@ BENCHES = [
 ]
 
 
+@cache
 def planned(design, shop=BENCHES[0]):
     seat, _, faults = plan_seat(design, design.boom, design.seat)
     assert not faults
