@@ -26,8 +26,12 @@ from boomwright.manifest import BOOK_PROCESS
 from boomwright.manifest import FILE as MANIFEST_FILE
 from boomwright.manifest import Manifest, read_manifest, sum_of
 from boomwright.parts.catalogue import PARTS
+from boomwright.parts.coupon import COUPONS
 from boomwright.pieces import Expectation
+from boomwright.plan.coupon import plan_coupon
 from boomwright.plan.plan import Plan, make_plan
+from boomwright.plan.size import Size
+from boomwright.shop.profile import Shop
 from boomwright.shop.tomlfile import load_shop
 
 FILE = "audit.json"
@@ -76,6 +80,8 @@ def audit_folder(folder: Path, executor: Executor | None = None) -> Audit:
     except MeasureError as error:
         return Audit((_broken(MANIFEST_FILE, "readable", str(error)),))
     findings = list(_sums(folder, manifest))
+    if manifest.made_from == "shop":
+        return Audit((*findings, *_coupon_findings(folder, manifest, executor or Alone())))
     try:
         plan = make_plan(load_design(folder / DESIGN_FILE), load_shop(folder / SHOP_FILE))
     except (InputFault, AccessError) as error:
@@ -91,13 +97,31 @@ def audit_folder(folder: Path, executor: Executor | None = None) -> Audit:
     return Audit(tuple(findings), solved.result())
 
 
+def _coupon_findings(folder: Path, manifest: Manifest, executor: Executor) -> Iterable[Finding]:
+    """Of calibration pieces: their plan follows from the shop alone."""
+    try:
+        plan = plan_coupon(load_shop(folder / SHOP_FILE))
+    except (InputFault, AccessError) as error:
+        return [_broken(SHOP_FILE, "readable", str(error))]
+    asked = [e for name in manifest.parts if name in COUPONS for e in COUPONS[name].expect(plan)]
+    asked += _of_formats(manifest, plan.shop)
+    bench_for.cache_clear()
+    found = judge_all(folder.absolute(), asked, executor)
+    bench_for.cache_clear()
+    return [*_size_findings(SHOP_FILE, plan.sizes, manifest), *found]
+
+
 def _expectations(plan: Plan, manifest: Manifest) -> Iterable[Expectation]:
     for name in manifest.parts:
         if name in PARTS and PARTS[name].left_out(plan) is None:
             yield from PARTS[name].expect(plan)
+    yield from _of_formats(manifest, plan.shop)
+
+
+def _of_formats(manifest: Manifest, shop: Shop) -> Iterable[Expectation]:
     for entry in manifest.entries:
         if entry.format in FORMATS and entry.process != BOOK_PROCESS:
-            yield from FORMATS[entry.format].expect(entry, plan.shop)
+            yield from FORMATS[entry.format].expect(entry, shop)
 
 
 def _solve(folder: Path, design: Design) -> Electrical:
@@ -114,19 +138,24 @@ def _sums(folder: Path, manifest: Manifest) -> Iterable[Finding]:
 
 
 def _plan_findings(plan: Plan, manifest: Manifest) -> Iterable[Finding]:
-    """The sizes that follow from the design beside the files are the sizes the files were made with."""
+    """Sizes as the files were made with, and nothing left out that the design asks for."""
+    yield from _size_findings(DESIGN_FILE, plan.sizes, manifest)
+    missing = [part.name for part in PARTS if part.name in manifest.left_out and part.left_out(plan) is None]
+    for name in missing:
+        yield Finding(DESIGN_FILE, f"part {name}", "made", "left out", 0.0, "", False)
+
+
+def _size_findings(file: str, sizes: Iterable[Size], manifest: Manifest) -> Iterable[Finding]:
+    """The sizes that follow from the file beside the others are the sizes these were made with."""
     made = {size.key: size for size in manifest.sizes}
-    for size in plan.sizes:
+    for size in sizes:
         was = made.pop(size.key, None)
         same = was is not None and math.isclose(was.value, size.value, rel_tol=0.0, abs_tol=1e-9)
         measured = round(was.value, DIGITS) if was else None
         reason = "" if was else "the files were made without it"
-        yield Finding(DESIGN_FILE, size.key, round(size.value, DIGITS), measured, 1e-9, size.unit, same, reason)
+        yield Finding(file, size.key, round(size.value, DIGITS), measured, 1e-9, size.unit, same, reason)
     for key, size in made.items():
-        yield Finding(DESIGN_FILE, key, "absent", round(size.value, DIGITS), 0.0, size.unit, False)
-    missing = [part.name for part in PARTS if part.name in manifest.left_out and part.left_out(plan) is None]
-    for name in missing:
-        yield Finding(DESIGN_FILE, f"part {name}", "made", "left out", 0.0, "", False)
+        yield Finding(file, key, "absent", round(size.value, DIGITS), 0.0, size.unit, False)
 
 
 def _electrical_findings(found: Electrical) -> Iterable[Finding]:

@@ -205,6 +205,25 @@ def rescale(
 
 
 @app.command()
+def coupon(
+    shop: Annotated[Path | None, typer.Option(help="The shop file (TOML); absent = the built-in shop.")] = None,
+    out: Annotated[Path | None, typer.Option(help="The output folder; absent = outputs/coupon.")] = None,
+    jobs: Jobs = None,
+    quiet: Quiet = False,
+) -> None:
+    """Make the calibration pieces for a shop's printer and laser, with a sheet that says how to read them."""
+    from boomwright.coupon import make_coupon
+    from boomwright.crew import jobs_for_one
+
+    made = make_coupon(shop, out, progress=_progress, jobs=jobs or jobs_for_one())
+    if not quiet:
+        for size in made.plan.sizes:
+            typer.echo(str(size))
+        typer.echo(f"{len(made.manifest.entries)} files in {made.folder}; begin with bench/coupon-sheet.pdf")
+    _judge(made.audit, quiet)
+
+
+@app.command()
 def show(subject: Annotated[Subject, typer.Argument(help="What to list.")]) -> None:
     """List what the program knows: parts, materials, cables, the built-in shop, the design file's schema."""
     from boomwright.listing import listing

@@ -4,13 +4,16 @@ from __future__ import annotations
 
 import json
 from collections.abc import Callable, Sequence
+from textwrap import wrap
 
 from boomwright.data.tables import cables, materials
 from boomwright.design.schema import design_schema
 from boomwright.parts.catalogue import PARTS
+from boomwright.parts.coupon import COUPONS
 from boomwright.shop.profile import Shop
 from boomwright.shop.tomlfile import write_shop
 
+COLUMNS = 100
 Span = tuple[float, float] | None
 
 
@@ -20,8 +23,20 @@ def listing(subject: str) -> str:
 
 
 def _parts() -> str:
-    rows = [(part.name, ", ".join(part.processes), part.purpose) for part in PARTS]
-    return _table(("part", "made by", "what it is for"), rows)
+    """A few lines a part, no wider than a terminal; then the calibration pieces, which another command makes."""
+    lines = list[str]()
+    for part in PARTS:
+        lines += _told(f"{part.name} ({', '.join(part.processes)})", part.purpose)
+        lines += _told("", f"left out when: {part.left_out_when}")
+    lines += ["", "Calibration pieces, by boomwright coupon:"]
+    for piece in COUPONS:
+        lines += _told(f"{piece.name} ({', '.join(piece.processes)})", piece.purpose)
+    return "\n".join(lines)
+
+
+def _told(head: str, words: str) -> list[str]:
+    """A head, and words wrapped under it; without a head the words alone."""
+    return [*([head] if head else []), *wrap(words, COLUMNS, initial_indent="    ", subsequent_indent="        ")]
 
 
 def _materials() -> str:

@@ -7,7 +7,7 @@ import json
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
-from typing import Any
+from typing import Any, Literal
 
 from boomwright import __version__
 from boomwright.errors import MeasureError
@@ -19,17 +19,20 @@ FILE = "manifest.json"
 SCHEMA = 1
 BOOK_PROCESS = "book"
 """Of files that people read: they have a sum, and nothing in them is measured."""
+MadeFrom = Literal["design", "shop"]
+"""What the files of a folder follow from: a design (and a shop), or a shop alone (its calibration pieces)."""
 
 
 @dataclass(frozen=True)
 class Manifest:
-    """What a manifest says: files with their sums, the parts made, the sizes with their origins."""
+    """What a manifest says: files with their sums, parts, sizes with their origins, and what all of it follows from."""
 
     entries: tuple[FileEntry, ...]
     sums: Mapping[str, str]
     parts: tuple[str, ...]
     left_out: Mapping[str, str] = field(default_factory=dict)
     sizes: tuple[Size, ...] = ()
+    made_from: MadeFrom = "design"
 
 
 def sum_of(path: Path) -> str:
@@ -39,7 +42,13 @@ def sum_of(path: Path) -> str:
 
 
 def write_manifest(
-    folder: Path, entries: Sequence[FileEntry], parts: Sequence[str], left_out: Mapping[str, str], sizes: Sequence[Size]
+    folder: Path,
+    entries: Sequence[FileEntry],
+    parts: Sequence[str],
+    left_out: Mapping[str, str],
+    sizes: Sequence[Size],
+    *,
+    made_from: MadeFrom = "design",
 ) -> Manifest:
     """Write the manifest of what stands in `folder`, and return it."""
     entries = sorted(entries, key=lambda entry: entry.path)
@@ -62,13 +71,14 @@ def write_manifest(
     document = {
         "schema": SCHEMA,
         "version": __version__,
+        "made_from": made_from,
         "files": files,
         "parts": list(parts),
         "left_out": dict(left_out),
         "plan": plan,
     }
     (folder / FILE).write_text(json.dumps(document, indent=1, ensure_ascii=True, allow_nan=False) + "\n", "utf-8")
-    return Manifest(tuple(entries), sums, tuple(parts), dict(left_out), tuple(sizes))
+    return Manifest(tuple(entries), sums, tuple(parts), dict(left_out), tuple(sizes), made_from)
 
 
 def read_manifest(folder: Path) -> Manifest:
@@ -82,9 +92,10 @@ def read_manifest(folder: Path) -> Manifest:
         )
         parts = tuple(str(name) for name in document["parts"])
         left_out = {str(k): str(v) for k, v in document["left_out"].items()}
+        made_from: MadeFrom = "shop" if document.get("made_from", "design") == "shop" else "design"
     except (OSError, ValueError, KeyError, TypeError, AttributeError, RecursionError) as error:
         raise MeasureError(f"{FILE} cannot be read: {error}") from error
-    return Manifest(entries, sums, parts, left_out, sizes)
+    return Manifest(entries, sums, parts, left_out, sizes, made_from)
 
 
 def _entry(item: Any) -> FileEntry:

@@ -201,12 +201,18 @@ class Expectation:
     rule: Literal["near", "at_least", "at_most"] = "near"
 
 
+NEVER = "never"
+"""When a part is left out that every design has."""
+
+
 class Part:
     """Base of every part: what it is for, how it is made, when it is left out, its pieces, what its files must show."""
 
     name: str = ""
     purpose: str = ""
     processes: tuple[Process, ...] = ()
+    left_out_when: str = NEVER
+    """In plain words, as `show parts` says it; true to what `left_out` finds."""
 
     def left_out(self, plan: Plan) -> str | None:
         """Why this design has no such part, in words; None when it has one."""

@@ -2,6 +2,7 @@
 
 import math
 from dataclasses import replace
+from functools import cache
 
 import pytest
 from samples import CAMERA, CAMERA_FOLDED, FITTING, GAUGE, LOOP_868, MIXED_1296, TUBE_915, UPRIGHT_868, rod
@@ -28,6 +29,7 @@ BENCHES = [
 ]
 
 
+@cache
 def planned(design, shop=BENCHES[0]):
     seat, _, faults = plan_seat(design, design.boom, design.seat)
     assert not faults
@@ -117,6 +119,21 @@ def test_halves_of_a_straight_element_lie_on_two_notches():
     middle = (gap + tip) / 2.0
     low, high = sorted([plan.rails_mm, (y0, y1)])
     assert low[0] < middle < high[1]
+
+
+def test_props_keep_clear_of_saddles_and_rods():
+    close = replace(
+        TUBE_915,
+        driven=replace(TUBE_915.driven, at_mm=24.0, diameter_mm=2.0, gap_mm=17.0, length_mm=104.0),
+        rods=(rod("R", 0, 114.6, 2), rod("D1", 31, 100, 2, 1)),
+        boom=Boom("square", 15.0, "beech", 30.0, 20.0),
+        seat=Seat("through"),
+    )
+    _, plan, _, _ = planned(close)
+    found = kinds(plan)
+    (low, high), *_ = (s.reach(3.0)[0] for s in found["prop"])
+    assert (low, high) == (pytest.approx(24.0 - (7.0 - 1.0 - 0.3)), pytest.approx(24.0 + (7.0 - 1.0 - 0.3)))
+    assert all(s.reach(3.0)[0][0] > high or s.reach(3.0)[0][1] < low for s in found["saddle"])
 
 
 @pytest.mark.parametrize("design", [UPRIGHT_868, LOOP_868], ids=lambda d: d.driven.form)

@@ -11,7 +11,7 @@ from pathlib import Path
 from typing import Any
 
 from boomwright.errors import CatalogueError, MeasureError
-from boomwright.formats import assembly, outlines, plates, slots
+from boomwright.formats import assembly, edges, outlines, plates, slots
 from boomwright.formats.format import FileEntry, Format
 from boomwright.formats.outlines import DxfReading, Outline
 from boomwright.pieces import DrawingPiece, Expectation, Piece, Probe
@@ -24,7 +24,13 @@ MILLIMETRES = 4
 LAYER_COLOURS = (1, 5, 3, 6, 4, 2, 7)
 """Colour numbers, given to the layers in the order of their names."""
 
-MEASURES = {**outlines.MEASURES, "slot": slots.measure_slot, **plates.MEASURES, **assembly.MEASURES}
+MEASURES = {
+    **outlines.MEASURES,
+    "slot": slots.measure_slot,
+    "edge_at": edges.measure_edge,
+    **plates.MEASURES,
+    **assembly.MEASURES,
+}
 
 
 class Dxf(Format):

@@ -251,6 +251,12 @@ def measure_page_count(reading: PdfReading, arguments: Mapping[str, Any]) -> flo
     return float(len(reading.pages))
 
 
+def measure_line_count(reading: PdfReading, arguments: Mapping[str, Any]) -> float:
+    """Number of straight lines of a `layer`, on all pages."""
+    layer = str(arguments["layer"])
+    return float(sum(line.layer == layer for page in reading.pages for line in page.lines))
+
+
 def measure_outside(reading: PdfReading, arguments: Mapping[str, Any]) -> float:
     """How far any line runs over its page's edge [mm]; 0 when none does."""
     over = [0.0]
@@ -264,6 +270,7 @@ MEASURES: dict[str, Callable[[Any, Mapping[str, Any]], float]] = {
     "line_at": measure_line,
     "check_bar_mm": measure_check_bar,
     "page_count": measure_page_count,
+    "line_count": measure_line_count,
     "outside_mm": measure_outside,
 }
 

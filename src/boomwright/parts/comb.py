@@ -31,6 +31,7 @@ class SpacingComb(Part):
     name = "spacing-comb"
     purpose = "drops over the finished antenna beside the boom and shows every rod's place"
     processes = ("laser",)
+    left_out_when = "fewer than two conductors to compare, one too short to pass a plate, or a sheet too small"
 
     def left_out(self, plan: Plan) -> str | None:
         """Nothing to compare, or a sheet too small."""

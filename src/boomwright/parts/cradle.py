@@ -24,6 +24,7 @@ class CradlePart(Part):
     name = "cradle"
     purpose = "holds all rods on the datum plane, square and centred, while the adhesive cures"
     processes = ("print",)
+    left_out_when = "no conductor lies on the datum plane: no rods, and the driven element is upright or a loop"
 
     def left_out(self, plan: Plan) -> str | None:
         """Without a conductor on the datum plane there is nothing to hold."""

@@ -24,6 +24,7 @@ class CutBlockPart(Part):
     name = "cut-block"
     purpose = "saws rods to length: the rod lies in the trough against the stop, the slot leads the blade square"
     processes = ("print",)
+    left_out_when = "no straight rod to cut, or a bed too short for any block"
 
     def left_out(self, plan: Plan) -> str | None:
         """Nothing straight to cut."""

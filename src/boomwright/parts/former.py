@@ -38,6 +38,7 @@ class FormerPart(Part):
     name = "former"
     purpose = "bends the driven element to size by posts and marks; for a straight one, saws the feed gap"
     processes = ("print",)
+    left_out_when = "the driven element is a round loop larger than the bed"
 
     def left_out(self, plan: Plan) -> str | None:
         """A round loop larger than the bed."""
@@ -130,15 +131,15 @@ def _former(former: FormerPlan, offsets: Offsets) -> Shape:
     if not former.is_corner:
         gap = (-former.gap_mm / 2.0, former.gap_mm / 2.0)
         added.append(box(_drawn(gap, g), _drawn((-former.channel_mm / 2.0 - WALL_MM, 0.5 * r), g), (foot, low)))
-    added += [_post(bend, former.wire_mm, g) for bend in former.posts]
+    added += [_post(bend, former, g) for bend in former.posts]
     tools = label_tools(former.labels)
     tools += [_mark(bend, former.wire_mm) for bend in former.posts if former.leg_mm > ASIDE_MM]
     return cut(unite(body, added), tools)
 
 
-def _post(bend: Bend, wire_mm: float, growth_mm: float) -> Shape:
-    x, y = bend.middle(wire_mm)
-    foot, top = 0.5 * BASE_MM, BASE_MM + wire_mm + OVER_MM
+def _post(bend: Bend, former: FormerPlan, growth_mm: float) -> Shape:
+    x, y = bend.middle(former.wire_mm)
+    foot, top = 0.5 * BASE_MM, former.post_top_mm
     return cylinder((x, y, foot), (0, 0, 1), bend.post_mm - growth_mm, top - foot)
 
 

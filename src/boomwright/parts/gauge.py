@@ -26,6 +26,7 @@ class LengthGauge(Part):
     name = "length-gauge"
     purpose = "shows whether a rod is cut to length: it drops into its go slot and not into the one with the nick"
     processes = ("print",)
+    left_out_when = "no straight rod to check, or every rod longer than the bed: the plan then says to use a steel rule"
 
     def left_out(self, plan: Plan) -> str | None:
         """Nothing straight to check, or every rod longer than the bed."""

@@ -25,6 +25,7 @@ class GrooveGuide(Part):
     name = "groove-guide"
     purpose = "clamps on the boom with ties: a slot over every groove to file or mill along, a bore at every hole"
     processes = ("print",)
+    left_out_when = "the boom has no seats, or the bed is too short for a section over one seat"
 
     def left_out(self, plan: Plan) -> str | None:
         """No seats, or a bed too short for one."""

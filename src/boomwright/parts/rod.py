@@ -21,6 +21,7 @@ class RodPart(Part):
     name = "rod"
     purpose = "the parasitic elements: reflector and directors, cut to length"
     processes = ("cnc",)
+    left_out_when = "the design has no rods"
 
     def left_out(self, plan: Plan) -> str | None:
         """A design may have no rods at all."""

@@ -22,6 +22,7 @@ class SheetCradlePart(Part):
     name = "sheet-cradle"
     purpose = "holds all rods on the datum plane, square and centred, while the adhesive cures; from flat sheet"
     processes = ("laser",)
+    left_out_when = "as the cradle; or rods too short for rails of sheet, or no room for them clear of the adhesive"
 
     def left_out(self, plan: Plan) -> str | None:
         """Nothing to hold, or nothing that a sheet could hold."""

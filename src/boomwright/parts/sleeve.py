@@ -21,6 +21,7 @@ class SleevePart(Part):
     name = "sleeve"
     purpose = "the tube that keeps a rod from touching the boom it passes through"
     processes = ("cnc",)
+    left_out_when = "no rod passes through the boom in an insulating sleeve"
 
     def left_out(self, plan: Plan) -> str | None:
         """Only insulated rods have sleeves."""

@@ -24,6 +24,13 @@ class StockPlanPart(Part):
     name = "stock-plan"
     purpose = "which bar each rod is cut from: where to saw, kerf and dressing counted, and the offcuts"
     processes = ("bench",)
+    left_out_when = "every conductor is a perfect one, which no shelf holds"
+
+    def left_out(self, plan: Plan) -> str | None:
+        """Nothing that could be bought."""
+        if plan_stock(plan.design, plan.shop)[0].groups:
+            return None
+        return "every conductor is a perfect one, which no shelf holds: name their materials"
 
     def build(self, plan: Plan) -> tuple[Piece, ...]:
         """One table."""

@@ -63,6 +63,8 @@ class Bend:
 class FormerPlan:
     """The former of a bent element, or (without bends) the jig of a straight one.
 
+    An element wound past a whole turn rides on its own beginning: its post is higher by the wire.
+
     size       the plate's spans in x and y, top of the base
     walls      the channel's walls as (x, y) rectangles: the outer first, then the inner if there is room
     leg_mm     length of the straight run from the stop to the first bend
@@ -83,6 +85,12 @@ class FormerPlan:
     is_corner: bool = False
     closed: bool = False
     left_out: str | None = None
+
+    @property
+    def post_top_mm(self) -> float:
+        """Top of the posts above the bed [mm]."""
+        layers = 1 + any(bend.turn_deg > 360.0 for bend in self.posts)
+        return BASE_MM + layers * self.wire_mm + OVER_MM
 
 
 @lru_cache(maxsize=8)

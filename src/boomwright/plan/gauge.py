@@ -82,10 +82,11 @@ def plan_gauge(design: Design, shop: Shop) -> tuple[GaugePlan, tuple[Size, ...]]
     kinds = _kinds(design)
     fitting = [k for k in kinds if k.length_mm + k.tolerance_mm + 2.0 * END_MM <= bed[0]]
     beyond = tuple(f"{k.tags} {k.length_mm:g} mm" for k in kinds if k not in fitting)
+    ruled = tuple(_ruled(kind, bed[0]) for kind in kinds if kind not in fitting)
     if not fitting:
         found = f"no rod length fits the bed of {bed[0]:g} mm ({', '.join(beyond)}): check with a steel rule"
-        return GaugePlan((), beyond, found if kinds else "the design has no straight rod to check"), ()
-    slide, plates, sizes = shop.printer.slide_clearance_mm, list[GaugePlate](), list[Size]()
+        return GaugePlan((), beyond, found if kinds else "the design has no straight rod to check"), ruled
+    slide, plates, sizes = shop.printer.slide_clearance_mm, list[GaugePlate](), list[Size](ruled)
     rest = fitting
     while rest:
         count = next(n for n in range(len(rest), 0, -1) if n == 1 or _height(rest[:n], slide) <= bed[1])
@@ -95,8 +96,19 @@ def plan_gauge(design: Design, shop: Shop) -> tuple[GaugePlan, tuple[Size, ...]]
         for word, sign in (("go", 1.0), ("no_go", -1.0)):
             size = kind.length_mm + sign * kind.tolerance_mm
             origin = f"{kind.tags}: {kind.length_mm:g} {'+' if sign > 0 else '-'} {kind.tolerance_mm:g} (ISO 2768 fine)"
-            sizes.append(Size(f"gauge.{kind.tags.replace(' ', '+')}.{word}_mm", size, "mm", origin))
+            sizes.append(Size(f"gauge.{_key(kind)}.{word}_mm", size, "mm", origin))
     return GaugePlan(tuple(plates), beyond), tuple(sizes)
+
+
+def _ruled(kind: _Kind, bed_mm: float) -> Size:
+    """A length that no plate takes: two pieces set apart on a board would be no truer than the rule that sets them."""
+    within = f"within {kind.tolerance_mm:g} (ISO 2768 fine)" if kind.tolerance_mm else "as near as it lets you"
+    words = f"longer than the bed of {bed_mm:g} takes: check it with a steel rule, {within}"
+    return Size(f"gauge.{_key(kind)}.rule_mm", kind.length_mm, "mm", words)
+
+
+def _key(kind: _Kind) -> str:
+    return kind.tags.replace(" ", "+")
 
 
 def _kinds(design: Design) -> list[_Kind]:

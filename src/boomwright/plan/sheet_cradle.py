@@ -14,21 +14,11 @@ from boomwright.errors import Fault
 from boomwright.plan.cradle import Held
 from boomwright.plan.frame import IDENTITY, Matrix, turned_about_x
 from boomwright.plan.seat import SeatPlan
-from boomwright.plan.sheet_frame import (
-    EDGE_MM,
-    FOOT_MM,
-    TooLargeError,
-    base_pieces,
-    base_rooms,
-    notched_top,
-    prop_half_mm,
-    rail_feet,
-    rail_pieces,
-    spreaders,
-    stop_foot_mm,
-)
-from boomwright.plan.sheet_lines import TIE_SLOT_MM, LeftOutError, Lines, SaddleLine, lay_lines
-from boomwright.plan.sheet_plate import Plate, Rect, Standing, across, along_x, with_slots
+from boomwright.plan.sheet_base import EDGE_MM, FOOT_MM, base_pieces, base_rooms, stop_foot_mm
+from boomwright.plan.sheet_frame import notched_top, rail_feet, rail_pieces, spreaders
+from boomwright.plan.sheet_lines import Lines, lay_lines
+from boomwright.plan.sheet_plate import LeftOutError, Plate, Rect, Standing, TooLargeError, across, along_x, with_slots
+from boomwright.plan.sheet_saddle import TIE_SLOT_MM, SaddleLine
 from boomwright.plan.sheet_splice import FISHPLATES_MM
 from boomwright.plan.sheet_words import Wish, with_words
 from boomwright.plan.size import Size
@@ -177,8 +167,9 @@ def _props(lines: Lines) -> list[Standing]:
     t, height = lines.sheet_mm, lines.axis_height_mm
     for prop in lines.props:
         vee = replace(lines.vee(prop.held), at_mm=0.0)
-        half = prop_half_mm(vee.radius_mm)
-        foot = Rect((-FOOT_MM / 2.0, FOOT_MM / 2.0), (0.0, t))
+        half = prop.half_mm
+        foot_half = min(FOOT_MM / 2.0, half - 1.0)
+        foot = Rect((-foot_half, foot_half), (0.0, t))
         plate = Plate("prop", "PROP", Rect((-half, half), (t, height)), (foot,), notched_top((vee,), height), (vee,))
         low, high = prop.y_mm
         found += [Standing(plate, along_x(prop.held.at_mm, y)) for y in ((low, high), (-high, -low))]

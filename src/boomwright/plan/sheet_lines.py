@@ -13,7 +13,8 @@ from boomwright.design.model import Boom, Design
 from boomwright.plan.cradle import Held, held_conductors
 from boomwright.plan.notch import notch_apex_height_mm
 from boomwright.plan.seat import SeatPlan
-from boomwright.plan.sheet_plate import Span, Vee, free_spans
+from boomwright.plan.sheet_plate import LeftOutError, Span, Vee
+from boomwright.plan.sheet_saddle import SaddleLine, saddle_places, stand_saddles
 from boomwright.plan.sheet_splice import FISHPLATES_MM
 from boomwright.plan.size import Size
 from boomwright.shop.profile import Shop
@@ -30,23 +31,12 @@ LONG_ROD_MM = 150.0
 """Shorter rods sag by microns wherever they are held: their rails stand as far apart as the tips allow."""
 
 TIP_MARGIN_MM, PROP_MARGIN_MM = 1.0, 3.0
+PROP_BESIDE_MM, PROP_CLEAR_MM = 5.0, 0.3
 LEAST_HOLD_MM = 1.5
 WEB_MM = 1.5
 """Least sheet between two slots."""
 
 MOST_STOP_MM, LEAST_STOP_MM = 14.0, 3.0
-MOST_SADDLE_SPAN_MM = 300.0
-SADDLE_FROM_END_MM, SADDLE_FROM_ROD_MM = 4.0, 20.0
-BESIDE_WINDOW_MM = 4.0
-FAR_MM = 20.0
-"""A saddle this far beyond the rails' ends gets its own sleeper, and the rails run on to it."""
-
-CHEEK_MM, LEAST_CHEEK_MM = 2.4, 0.8
-TIE_SLOT_MM = (2.0, 4.2)
-
-
-class LeftOutError(Exception):
-    """Why a sheet cannot make the fixture, in words."""
 
 
 @dataclass(frozen=True)
@@ -60,21 +50,11 @@ class StopLine:
 
 @dataclass(frozen=True)
 class PropLine:
-    """A second notch under each half of a straight driven element: the conductor and |y| of the prop."""
+    """A second notch under each half of a straight driven element: the conductor, |y| of the prop, half its length."""
 
     held: Held
     y_mm: Span
-
-
-@dataclass(frozen=True)
-class SaddleLine:
-    """A saddle's place along x, half its width, and half its channel's width at the top."""
-
-    x_mm: Span
     half_mm: float
-    channel_half_mm: float
-    low_mm: float
-    top_mm: float
 
 
 @dataclass(frozen=True)
@@ -118,23 +98,12 @@ def lay_lines(design: Design, boom: Boom, shop: Shop, seat: SeatPlan) -> tuple[L
     rails, rail_sizes = _rails(shop, seat, held)
     stops, width = _stops(design, shop, held)
     window = _window(design, shop)
-    ends = [(h.at_mm - h.radius_mm * ROOT_2, h.at_mm + h.radius_mm * ROOT_2) for h in held]
-    rail_x = (min(e[0] for e in ends) - 6.0, max(e[1] for e in ends) + 6.0)
-    places = _saddle_places(design, shop, seat)
-    rail_x = _reaching(rail_x, places)
-    shaped = []
-    for x in places:
-        wide = _saddle((boom, shop, seat), height, x, math.inf)
-        if wide.half_mm > rails[0] - 0.5:
-            if rail_x[0] <= x[0] and x[1] <= rail_x[1]:
-                wide = _saddle((boom, shop, seat), height, x, rails[0] - 0.5)
-            elif x[1] <= ends[0][0] - 3.0:
-                rail_x = (max(rail_x[0], x[1] + 0.5), rail_x[1])
-            elif x[0] >= max(e[1] for e in ends) + 3.0:
-                rail_x = (rail_x[0], min(rail_x[1], x[0] - 0.5))
-            else:
-                wide = _saddle((boom, shop, seat), height, x, rails[0] - 0.5)
-        shaped.append(wide)
+    notches = (
+        min(h.at_mm - h.radius_mm * ROOT_2 for h in held),
+        max(h.at_mm + h.radius_mm * ROOT_2 for h in held),
+    )
+    places = saddle_places(design, shop, seat, window is not None)
+    saddles, rail_x = stand_saddles((boom, shop, seat), height, places, (rails[0], notches))
     lines = Lines(
         sheet_mm=t,
         axis_height_mm=height,
@@ -145,23 +114,13 @@ def lay_lines(design: Design, boom: Boom, shop: Shop, seat: SeatPlan) -> tuple[L
         held=held,
         stops=stops,
         stop_width_mm=width,
-        props=_props(design, shop, seat, held, rails),
-        saddles=tuple(shaped),
+        props=_props(design, shop, seat, (held, rails, saddles)),
+        saddles=saddles,
         is_round=boom.section == "round",
         window_mm=window,
     )
     sizes += [Size("sheet-cradle.stop.width_mm", width, "mm", "every stop alike: the closest conductors leave it")]
     return lines, sizes + rail_sizes
-
-
-def _reaching(rail_x_mm: Span, saddles: list[Span]) -> Span:
-    """The rails' ends, drawn out to saddles that stand far beyond the outermost notches."""
-    low, high = rail_x_mm
-    first, last = saddles[0], saddles[-1]
-    return (
-        first[0] - 8.0 if first[1] < low - FAR_MM else low,
-        last[1] + 8.0 if last[0] > high + FAR_MM else high,
-    )
 
 
 def _axis_height(
@@ -241,10 +200,13 @@ def _window(design: Design, shop: Shop) -> Span | None:
     return None
 
 
-def _props(design: Design, shop: Shop, seat: SeatPlan, held: tuple[Held, ...], rails: Span) -> tuple[PropLine, ...]:
+def _props(
+    design: Design, shop: Shop, seat: SeatPlan, laid: tuple[tuple[Held, ...], Span, tuple[SaddleLine, ...]]
+) -> tuple[PropLine, ...]:
     """A half of a straight element lies on rail and prop, its middle between them; short ones on the rail alone."""
     if design.driven.form != "straight":
         return ()
+    held, rails, saddles = laid
     (one,) = (h for h in held if h.tag == "DE")
     t = shop.laser.sheet_mm
     first = max(seat.half_width_mm + shop.cradle.relief_mm, design.driven.gap_mm / 2.0 + 1.0)
@@ -252,69 +214,20 @@ def _props(design: Design, shop: Shop, seat: SeatPlan, held: tuple[Held, ...], r
     room = WEB_MM + max(shop.laser.fit_mm, 0.0)
     inside, outside = rails[0] - room - t >= first, one.reach_mm - PROP_MARGIN_MM - t >= rails[1] + room
     if inside and (middle <= sum(rails) / 2.0 or not outside):
-        return (PropLine(one, (first, first + t)),)
-    if outside:
-        outer = one.reach_mm - PROP_MARGIN_MM
-        return (PropLine(one, (outer - t, outer)),)
-    return ()
-
-
-def _saddle_places(design: Design, shop: Shop, seat: SeatPlan) -> list[Span]:
-    """x of each saddle: near both ends of the boom, and between conductors wherever the way between is long."""
-    relief, t, driven = shop.cradle.relief_mm, shop.laser.sheet_mm, design.driven
-    kept = [(b.at_mm - b.half_x_mm - relief, b.at_mm + b.half_x_mm + relief) for b in seat.bond_lines]
-    half = driven.outer_diameter_mm / 2.0 + relief
-    # The base has a window under what is fitted later: a saddle stands on the sheet beside it.
-    half += BESIDE_WINDOW_MM if _window(design, shop) else 0.0
-    kept.append((driven.at_mm - half, driven.at_mm + half))
-    free = free_spans((seat.start_mm, seat.end_mm), kept)
-    first, last = free[0], free[-1]
-    for room, bare, end in ((first, kept, "tail"), (last, kept, "nose")):
-        reached = room[0] > seat.start_mm if end == "tail" else room[1] < seat.end_mm
-        if reached or room[1] - room[0] < t or not bare:
-            raise LeftOutError(f"the boom's {end} leaves no room for a saddle of {t:g} mm sheet clear of the adhesive")
-    places = [_near(first, t, at_end=False), _near(last, t, at_end=True)]
-    rooms = [f for f in free[1:-1] if f[1] - f[0] >= t]
-    while True:
-        places.sort()
-        wide = [(a, b) for a, b in pairwise(places) if b[0] - a[1] > MOST_SADDLE_SPAN_MM]
-        choices = []
-        for a, b in wide:
-            target = (a[1] + b[0]) / 2.0
-            for low, high in rooms:
-                at = min(max(target, low + t / 2.0), high - t / 2.0)
-                if a[1] + t < at < b[0] - t:
-                    choices.append((abs(at - target), at))
-        if not choices:
-            return places
-        _, at = min(choices)
-        places.append((at - t / 2.0, at + t / 2.0))
-
-
-def _near(room: Span, t: float, at_end: bool) -> Span:
-    """A saddle in the free end of the boom: off the end, but not far from the rods."""
-    long = room[1] - room[0] - t
-    away = min(long - min(SADDLE_FROM_END_MM, long / 2.0), SADDLE_FROM_ROD_MM)
-    low = room[0] + away if at_end else room[1] - away - t
-    return low, low + t
-
-
-def _saddle(given: tuple[Boom, Shop, SeatPlan], height_mm: float, x_mm: Span, most_half_mm: float) -> SaddleLine:
-    """A V for a round boom, a flat channel for a square one; narrow where it stands between the rails."""
-    boom, shop, seat = given
-    half = seat.half_width_mm
-    if boom.section == "round":
-        axis = height_mm - seat.axis_mm
-        low = axis - half * ROOT_2
-        channel = half / ROOT_2 + max(1.0, half / 6.0)
-        channel = min(channel, most_half_mm - LEAST_CHEEK_MM)
-        if channel < half / ROOT_2 + 0.3:
-            raise LeftOutError("the rails stand too close to the boom for a saddle between them")
-        top = low + channel
+        y = (first, first + t)
+    elif outside:
+        y = (one.reach_mm - PROP_MARGIN_MM - t, one.reach_mm - PROP_MARGIN_MM)
     else:
-        low, channel = height_mm - seat.top_mm, half + shop.printer.slide_clearance_mm
-        top = low + min(half, 4.0)
-        if channel + LEAST_CHEEK_MM > most_half_mm:
-            return SaddleLine(x_mm, most_half_mm, 0.0, low, low)
-    outer = min(channel + CHEEK_MM + TIE_SLOT_MM[0] + CHEEK_MM, most_half_mm)
-    return SaddleLine(x_mm, outer, channel, low, top)
+        return ()
+    return (PropLine(one, y, _prop_half_mm(one, y, held, saddles)),)
+
+
+def _prop_half_mm(one: Held, y_mm: Span, held: tuple[Held, ...], saddles: tuple[SaddleLine, ...]) -> float:
+    """Half a prop's length along x: it stays clear of the rods and saddles beside it."""
+    room = [abs(h.at_mm - one.at_mm) - h.radius_mm for h in held if h is not one]
+    room += [abs(x - one.at_mm) for s in saddles if s.half_mm + PROP_CLEAR_MM > y_mm[0] for x in s.x_mm]
+    notch = ROOT_2 * one.radius_mm
+    half = min([notch + PROP_BESIDE_MM, *(r - PROP_CLEAR_MM for r in room)])
+    if half < notch + PROP_CLEAR_MM:
+        raise LeftOutError(f"what stands beside {one.tag} leaves no room for the props under its halves")
+    return half

@@ -16,6 +16,14 @@ Box = tuple[Span, Span, Span]
 Point = tuple[float, float]
 
 
+class LeftOutError(Exception):
+    """Why a sheet cannot make the fixture, in words."""
+
+
+class TooLargeError(Exception):
+    """A part is larger than the sheet however it is cut: what it needs, in words."""
+
+
 @dataclass(frozen=True)
 class Rect:
     """An axis-parallel rectangle between two values of u and two of v [mm]."""

@@ -78,13 +78,20 @@ def _nearest(body: Rect, taken: Sequence[Rect], wish: Wish, height_mm: float) ->
     if span_u < 0.0 or span_v < 0.0:
         return None
     wish_u, wish_v = wish.u_mm - width / 2.0, wish.v_mm - height_mm / 2.0
-    vs = list(_steps(room.v[0], span_v, wish_v))
-    places = ((math.hypot(u - wish_u, v - wish_v), u, v) for u in _steps(room.u[0], span_u, wish_u) for v in vs)
-    for apart, u, v in sorted(places):
-        words = Words(wish.text, u, v, height_mm)
-        if not any(words_rect(words).meets(other) for other in taken):
-            return apart, words
-    return None
+    us, vs = list(_steps(room.u[0], span_u, wish_u)), list(_steps(room.v[0], span_v, wish_v))
+
+    def at(place: tuple[float, float]) -> tuple[float, Words]:
+        return math.hypot(place[0] - wish_u, place[1] - wish_v), Words(wish.text, *place, height_mm)
+
+    def is_free(found: tuple[float, Words]) -> bool:
+        return not any(words_rect(found[1]).meets(other) for other in taken)
+
+    # Most find room at once: the first of both rows is the nearest place.
+    first = at((us[0], vs[0]))
+    if is_free(first):
+        return first
+    places = sorted((at((u, v)) for u in us for v in vs), key=lambda found: (found[0], found[1].u_mm, found[1].v_mm))
+    return next((found for found in places if is_free(found)), None)
 
 
 def _steps(low: float, span: float, wish: float) -> Iterator[float]:

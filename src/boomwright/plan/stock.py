@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 
+from boomwright.data.tables import IDEAL
 from boomwright.design.centreline import developed_length_mm
 from boomwright.design.model import Design
 from boomwright.errors import Fault
@@ -64,7 +65,10 @@ def plan_stock(design: Design, shop: Shop) -> tuple[StockPlan, tuple[Size, ...],
 
 
 def _blanks(design: Design) -> dict[tuple[str, float], list[Blank]]:
-    """What is cut of each material and diameter: rods, and the driven element's wire or its two halves."""
+    """What is cut of each material and diameter: rods, and the driven element's wire or its two halves.
+
+    A perfect conductor is a figure of the calculation: nobody sells it.
+    """
     found: dict[tuple[str, float], list[Blank]] = {}
     for rod in design.rods:
         found.setdefault((rod.material, rod.diameter_mm), []).append(Blank(rod.tag, rod.length_mm))
@@ -72,7 +76,7 @@ def _blanks(design: Design) -> dict[tuple[str, float], list[Blank]]:
     pieces = 2 if driven.form == "straight" else 1
     one = Blank("DE", developed_length_mm(driven) / pieces)
     found.setdefault((driven.material, driven.diameter_mm), []).extend([one] * pieces)
-    return found
+    return {key: blanks for key, blanks in found.items() if key[0] != IDEAL}
 
 
 def _standard_mm(blanks: Sequence[Blank], shop: Shop) -> float:

@@ -65,7 +65,8 @@ def carried(design: Design, target: Target, shop: Shop) -> tuple[Design, tuple[R
     )
     driven = _driven(design, scale, target, shop)
     band = design.band
-    new_band = Band(band.low_mhz / scale, band.high_mhz / scale, target.to_mhz)
+    low, high = (round(value / scale, 3) for value in (band.low_mhz, band.high_mhz))
+    new_band = Band(min(low, target.to_mhz), max(high, target.to_mhz), target.to_mhz)
     seat = design.seat
     if seat is not None and seat.kind == "groove":
         seat = replace(seat, glue_gap_mm=min(seat.glue_gap_mm, max(0.05, round(seat.glue_gap_mm * scale, 2))))

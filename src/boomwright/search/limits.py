@@ -7,8 +7,11 @@ from collections.abc import Callable
 from dataclasses import dataclass, replace
 
 from boomwright.design.model import Design
+from boomwright.design.rules import require_boom
 from boomwright.errors import Fault, InputFault
+from boomwright.plan.mould import plan_mould
 from boomwright.plan.plan import make_plan
+from boomwright.plan.seat import plan_seat
 from boomwright.search.stock import Stock, least_web_gap_mm
 from boomwright.shop.profile import Shop
 from boomwright.units import wavelength_mm
@@ -113,11 +116,12 @@ def _spread(design: Design, behind_mm: float, ahead_mm: float) -> Design:
 
 
 def _mould_faults(design: Design, shop: Shop) -> frozenset[str]:
-    """Key paths that the mould's plan complains of; a boom that holds no groove complains of itself."""
-    try:
-        return frozenset(fault.path for fault in make_plan(design, shop).faults["mould"])
-    except InputFault as fault:
-        return frozenset(f"seat: {each.path}" for each in fault.faults)
+    """Key paths that the plans of seats and mould complain of; without sound seats there is no mould to plan."""
+    boom, wished = require_boom(design)
+    seat, _, faults = plan_seat(design, boom, wished)
+    if faults:
+        return frozenset(f"seat: {fault.path}" for fault in faults)
+    return frozenset(fault.path for fault in plan_mould(design, shop, seat)[2])
 
 
 def build_faults(design: Design, shop: Shop) -> tuple[Fault, ...]:

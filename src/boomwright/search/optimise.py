@@ -24,7 +24,7 @@ RATIO_PENALTY = 3.0
 LENGTH_UNIT_WL, GAP_UNIT_WL = 0.01, 0.04
 """Changes that move the gain by about a decibel: in these units the first steps are neither wild nor timid."""
 
-TOLERANCE_DB = 5e-4
+TOLERANCE_DB = 2e-5
 
 
 class Solves(Protocol):

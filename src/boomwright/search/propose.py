@@ -10,7 +10,7 @@ import numpy as np
 from boomwright.design.model import Design, Spec
 from boomwright.design.rules import check_design
 from boomwright.errors import Fault
-from boomwright.prediction import Prediction, predict
+from boomwright.prediction import Prediction, predict, sweep_frequencies_mhz
 from boomwright.search.limits import build_faults
 from boomwright.search.optimise import Aim, Array
 from boomwright.search.published import published_gain_dbi, start_of
@@ -101,19 +101,24 @@ def _aim(request: Request, margin: float) -> Aim:
 
 def _as_cut(request: Request, best: Candidate) -> tuple[Design, Array, Prediction]:
     """The design in whole steps and its prediction; again with more margin where a wish fails between frequencies."""
-    margin, array = MARGIN, best.array
-    boom_m = None if request.boom_mm is None else m_from_mm(request.boom_mm)
+    margin, array, corrected = MARGIN, best.array, None
     found: list[tuple[float, Design, Array, Prediction]] = []
     for _ in range(1 + RETRIES):
-        design, array = refine(best.frame, best.family, array, _aim(request, margin), boom_m)
-        prediction = predict(design)
+        design, array, corrected = refine(best.frame, best.family, array, _aim(request, margin), corrected)
+        prediction = predict(design, _checked_mhz(design))
         over = _over(request, prediction)
         found.append((over, design, array, prediction))
         if over <= 0.0 or over > 0.5:
             break
-        margin += 1.2 * over + MARGIN / 3.0
+        margin += over + MARGIN / 4.0
     _, design, array, prediction = min(found, key=lambda each: max(each[0], 0.0))
     return design, array, prediction
+
+
+def _checked_mhz(design: Design) -> tuple[float, ...]:
+    """The frequencies of `predict` that lie in the band, and its highest, which decides the mesh [MHz]."""
+    band, every = design.band, sweep_frequencies_mhz(design)
+    return (*(value for value in every if band.low_mhz <= value <= band.high_mhz), every[-1])
 
 
 def _over(request: Request, prediction: Prediction) -> float:

@@ -8,6 +8,7 @@ import numpy as np
 
 from boomwright.design.model import Design
 from boomwright.rf.arrays import Complexes, Floats
+from boomwright.rf.quadrature import interpolation
 from boomwright.rf.solve import Model
 from boomwright.rf.wires import wires_of
 from boomwright.search.draft import Frame, bounds_of, draft_design, rounded_mm
@@ -15,8 +16,9 @@ from boomwright.search.family import Family, Figures
 from boomwright.search.optimise import Aim, Array, Bounds, optimise
 from boomwright.units import m_from_mm
 
-CORRECTIONS = 4
-SETTLED_DB = 0.004
+CORRECTIONS = 2
+STEPS = 60
+SETTLED_OHM, SETTLED_DB = 0.2, 0.004
 ROUNDING_PASSES = 3
 
 
@@ -45,45 +47,32 @@ class Corrected:
         )
 
 
-@dataclass(frozen=True)
-class Exact:
-    """Figures of a design by the whole solver at the family's frequencies, (F,)."""
-
-    impedance_ohm: Complexes
-    gain_dbi: Floats
-    front_to_back_db: Floats
-
-
-def exact_figures(design: Design, frequencies_hz: tuple[float, ...]) -> Exact:
-    """A design solved in full at frequencies [Hz]."""
-    model = Model(wires_of(design), frequencies_hz[-1])
-    solved = [model.solve(frequency_hz) for frequency_hz in frequencies_hz]
-    return Exact(
-        np.array([each.impedance_ohm for each in solved]),
-        np.array([each.gain_dbi for each in solved]),
-        np.array([each.front_to_back_db for each in solved]),
-    )
-
-
-def refine(frame: Frame, family: Family, array: Array, aim: Aim, boom_m: float | None) -> tuple[Design, Array]:
+def refine(
+    frame: Frame, family: Family, array: Array, aim: Aim, corrected: Corrected | None = None
+) -> tuple[Design, Array, Corrected]:
     """The design nearest to the best that can be cut: every size a whole step.
 
     frame, family  what the array is made of
     array          where to begin
     aim            what is to be kept, with the margin for what rounding does
-    boom_m         reflector to last director [m], None = free
+    corrected      of an array nearby, None = not known yet
+
+    Returns the design, its array, and the correction for another turn.
     """
-    bounds = bounds_of(frame, family, len(array.lengths_m), None if boom_m is None else boom_m * 1e3)
-    last = -np.inf
+    bounds = bounds_of(frame, family, len(array.lengths_m), frame.request.boom_mm)
+    corrected = corrected or correct(frame, family, array)
     for _ in range(CORRECTIONS):
-        corrected = _corrected(frame, family, array)
-        array = optimise(corrected, (array.lengths_m, array.places_m), bounds, aim, 60)
-        if abs(array.merit_db - last) < SETTLED_DB:
+        array = optimise(corrected, (array.lengths_m, array.places_m), bounds, aim, STEPS)
+        before, corrected = corrected, correct(frame, family, array)
+        if _settled(before, corrected):
             break
-        last = array.merit_db
-    corrected = _corrected(frame, family, array)
     array = _on_steps(frame, corrected, array, bounds, aim)
-    return design_of(frame, array), array
+    return design_of(frame, array), array, corrected
+
+
+def _settled(one: Corrected, two: Corrected) -> bool:
+    apart_ohm = float(np.abs(one.impedance_ohm - two.impedance_ohm).max())
+    return apart_ohm < SETTLED_OHM and float(np.abs(one.gain_db - two.gain_db).max()) < SETTLED_DB
 
 
 def design_of(frame: Frame, array: Array) -> Design:
@@ -92,16 +81,20 @@ def design_of(frame: Frame, array: Array) -> Design:
     return draft_design(frame.request, frame.stock, rounded_mm(array.lengths_m, step), rounded_mm(array.places_m, step))
 
 
-def _corrected(frame: Frame, family: Family, array: Array) -> Corrected:
+def correct(frame: Frame, family: Family, array: Array) -> Corrected:
+    """The family set right by full solutions of an array at a few frequencies: what it leaves out varies slowly."""
     design = draft_design(frame.request, frame.stock, array.lengths_m * 1e3, array.places_m * 1e3)
-    exact = exact_figures(design, family.frequencies_hz)
+    frequencies_hz = np.array(family.frequencies_hz)
+    picked = sorted({0, len(frequencies_hz) // 2, len(frequencies_hz) - 1})
+    model = Model(wires_of(design), float(frequencies_hz[-1]))
+    solved = [model.solve(float(frequencies_hz[index])) for index in picked]
     found = family.figures(array.lengths_m, array.places_m)
-    return Corrected(
-        family,
-        exact.impedance_ohm - found.impedance_ohm,
-        exact.gain_dbi - found.gain_dbi,
-        exact.front_to_back_db - found.front_to_back_db,
-    )
+    shares = interpolation(frequencies_hz[picked], frequencies_hz)
+    # Ratios of impedance and differences of level are smoother than what they compare.
+    ratio = np.array([each.impedance_ohm for each in solved]) / found.impedance_ohm[picked]
+    gain = np.array([each.gain_dbi for each in solved]) - found.gain_dbi[picked]
+    back = np.array([each.front_to_back_db for each in solved]) - found.front_to_back_db[picked]
+    return Corrected(family, (shares @ ratio - 1.0) * found.impedance_ohm, shares @ gain, shares @ back)
 
 
 def _on_steps(frame: Frame, family: Corrected, array: Array, bounds: Bounds, aim: Aim) -> Array:

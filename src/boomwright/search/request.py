@@ -98,7 +98,8 @@ def check_request(request: Request) -> None:
     """Raises InputFault with everything that is wrong with a request."""
     faults = _band_faults(request)
     if not faults:
-        faults += _size_faults(request)
+        faults = _size_faults(request)
+    faults += _count_faults(request)
     faults += _wish_faults(request)
     if faults:
         raise InputFault(faults)
@@ -117,13 +118,18 @@ def _band_faults(request: Request) -> list[Fault]:
     return []
 
 
-def _size_faults(request: Request) -> list[Fault]:
-    wave, faults = request.wavelength_mm, []
+def _count_faults(request: Request) -> list[Fault]:
+    faults = []
     if request.boom_mm is None and request.rods is None:
         faults.append(Fault("--boom-mm", "missing, and --rods too", "give the boom's length or the number of rods"))
     if request.rods is not None and not 1 <= request.rods <= MOST_RODS:
         found = f"{request.rods} rods"
         faults.append(Fault("--rods", found, f"give 1 to {MOST_RODS}: reflector and directors together"))
+    return faults
+
+
+def _size_faults(request: Request) -> list[Fault]:
+    wave, faults = request.wavelength_mm, []
     for option, value, most_wl, what in (
         ("--boom-mm", request.boom_mm, MOST_BOOM_WL, "a boom"),
         ("--rod-mm", request.rod_mm, MOST_ROD_WL, "a rod"),

@@ -11,7 +11,7 @@ from boomwright.plan.seat import WEB_PER_RADIUS
 from boomwright.shop.profile import Bar, Shop
 from boomwright.units import wavelength_mm
 
-ROD_WL, WIDE_ROD_WL, WIRE_WL = 0.0085, 0.016, 0.009
+ROD_WL, WIDE_ROD_WL, WIRE_WL = 0.0085, 0.02, 0.009
 """Wished diameters [wavelengths]: that of the published arrays, one for wide bands, which thicker rods hold better,
 and a wire that bends into a folded element."""
 

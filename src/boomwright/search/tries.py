@@ -38,8 +38,8 @@ SPREAD_GAPS, SPREAD_LENGTHS = 0.25, 0.015
 STEPS, FEW_STEPS = 120, 60
 MANY_CONDUCTORS = 18
 MOST_DIRECTORS = 63
-SPACINGS_WL = (0.05, 0.035)
-"""Of a folded element: the first suits wide bands, the second leaves more room."""
+SPACINGS_WL = (0.042, 0.055)
+"""Of a folded element: the second suits thin rods in wide bands."""
 
 COMFORTABLE_DB = 0.12
 """Gain over the published array's at which the search ends early."""
@@ -82,9 +82,12 @@ class Task:
 
     @property
     def target_dbi(self) -> float:
-        """Gain at which the search may end early: above what is wished and above the published array's [dBi]."""
+        """Gain at which the search may end early: above what is wished and above the published array's [dBi].
+
+        Without a boom there is no published array to compare with: the search does not end early.
+        """
         if self.request.boom_mm is None:
-            return -math.inf
+            return math.inf
         published = published_gain_dbi(self.boom_mm / self.request.wavelength_mm)
         return max(published, self.request.gain_min_dbi or -math.inf) + COMFORTABLE_DB
 
@@ -108,15 +111,17 @@ def best_candidate(task: Task, progress: Progress) -> Candidate:
             break
     leaders = sorted(range(len(families)), key=lambda n: (-found[n].array.merit_db, n))
     frame, family = families[leaders[0]]
-    for count in _directors(request, frame.gaps, task.boom_mm)[:3]:
-        progress(f"trying {count} directors")
-        found.append(_run(task, (_at_ease(frame), family), (count, 1)))
-    if _best(found).array.merit_db < task.target_dbi or request.rods is not None:
-        for leader, numbers in zip(leaders, ((0, 2, 3), (0,)), strict=False):
-            frame, family = families[leader]
-            for count in _directors(request, frame.gaps, task.boom_mm)[-3 if len(numbers) > 1 else -1 :]:
-                progress(f"trying {count} directors, closer together")
-                found += [_run(task, (frame, family), (count, number)) for number in numbers]
+    counts = _directors(request, frame.gaps, task.boom_mm)
+    if _best(found).array.merit_db >= task.target_dbi:
+        for count in counts[:2]:
+            progress(f"trying {count} directors")
+            found.append(_run(task, (_at_ease(frame), family), (count, 1)))
+        return _fewest(found, task.target_dbi)
+    for count in counts[-3:]:
+        progress(f"trying {count} directors, closer together")
+        found.append(_run(task, (frame, family), (count, 0)))
+    for leader, count in zip(leaders, (_best(found).rods - 1, counts[-1]), strict=False):
+        found.append(_run(task, families[leader], (count, 2)))
     return _fewest(found, task.target_dbi)
 
 
