@@ -12,7 +12,7 @@ const axisByKey = new Map(scene.axes.map((axis) => [axis.key, axis]));
 const calm = window.matchMedia("(prefers-reduced-motion: reduce)");
 
 const HOME = { azimuth: scene.view[0], elevation: scene.view[1] };
-const TURN_DEG = 10, ZOOM = 1.2, MOVE_SHARE = 0.08, CLICK_PX = 5, REACH_PX = 12, GLIDE_MS = 400, MARGIN = 0.86;
+const TURN_DEG = 10, ZOOM = 1.2, MOVE_SHARE = 0.08, CLICK_PX = 5, REACH_PX = 12, TAG_PX = 26, GLIDE_MS = 400, MARGIN = 0.86;
 
 let renderer = null, camera = null, world = null, lamp = null;
 let pose = scene.poses[0];
@@ -290,8 +290,11 @@ function nearest(x, y) {
   for (const axis of scene.axes) {
     if (!partByKey.get(axis.part).group.visible) continue;
     const [[ax, ay], [bx, by]] = seenAxis(axis);
-    const length = Math.max(1e-9, (bx - ax) ** 2 + (by - ay) ** 2);
-    const share = Math.max(0, Math.min(1, ((x - ax) * (bx - ax) + (y - ay) * (by - ay)) / length));
+    const length = Math.max(1e-3, Math.hypot(bx - ax, by - ay));
+    // A rod's tag beyond its end counts as the rod.
+    const beyond = axis.key === "boom" ? 0 : TAG_PX / length;
+    const along = ((x - ax) * (bx - ax) + (y - ay) * (by - ay)) / length ** 2;
+    const share = Math.max(-beyond, Math.min(1 + beyond, along));
     const off = Math.hypot(x - ax - share * (bx - ax), y - ay - share * (by - ay));
     const thick = axis.radius * canvas.clientHeight / look.span;
     // On a thick boom a rod that crosses it is the nearer one.
