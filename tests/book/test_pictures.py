@@ -1,15 +1,18 @@
 """Pictures without a graphics card: against a plain ray test, and as files a general library reads."""
 
 import io
+from itertools import combinations, product
 
 import numpy as np
 import pytest
+import trimesh
 from PIL import Image
 from scene_cases import GREY, RED, box, boxes
 
 from boomwright.book.content import Picture
 from boomwright.book.pictures import PAPER, Shot, View, picture, pictures
 from boomwright.book.raster import Canvas, Sheet, png
+from boomwright.book.scene import ANTENNA, ReadPart, Scene
 
 FRONT = View(0.0, 0.0)
 """Along +y, x to the right, z up."""
@@ -71,6 +74,36 @@ def test_what_stands_behind_is_hidden_with_its_edges():
     from_the_back = pixels(picture(scene, Shot(("plate", "behind"), view=View(180.0, 0.0)), 200))
     middle = from_the_back[from_the_back.shape[0] // 2, 100]
     assert middle[0] > 2 * middle[1]
+
+
+def ink_at(scene: Scene, view: View, points: list) -> list[bool]:
+    """Whether there is ink at points of a scene of one part [mm], found by where its picture begins and ends."""
+    image = pixels(picture(scene, Shot((scene.parts[0].key,), view=view), 500))
+    rows, columns = np.flatnonzero(~is_paper(image).all(axis=1)), np.flatnonzero(~is_paper(image).all(axis=0))
+    seen, wanted = scene.parts[0].vertices_mm @ view.axes[:2].T, np.array(points) @ view.axes[:2].T
+    share = (wanted - seen.min(axis=0)) / np.ptp(seen, axis=0)
+    x = np.round(columns[0] + share[:, 0] * (columns[-1] - columns[0])).astype(int)
+    y = np.round(rows[-1] - share[:, 1] * (rows[-1] - rows[0])).astype(int)
+    near = [image[max(b - 1, 0) : b + 2, max(a - 1, 0) : a + 2].sum(axis=2).min() for a, b in zip(x, y, strict=True)]
+    return [value < 3 * 95 for value in near]
+
+
+def test_a_cube_shows_its_nine_edges_in_front_and_not_the_three_behind():
+    view = View(-30.0, 25.0)
+    ends = [np.array(p, float) for p in product((0, 10), repeat=3)]
+    edges = [(a + b) / 2.0 for a, b in combinations(ends, 2) if np.abs(a - b).sum() == 10.0]
+    farthest = min(ends, key=lambda end: end @ view.axes[2])
+    wanted = [bool(np.abs(middle - farthest).sum() > 5.0) for middle in edges]
+    assert wanted.count(False) == 3
+    assert ink_at(boxes(box("cube", (0, 0, 0), (10, 10, 10))), view, edges) == wanted
+
+
+def test_a_round_bar_has_an_outline_but_no_lines_along_it():
+    along_x = np.array([(0, 0, 1, 0), (0, 1, 0, 0), (-1, 0, 0, 0), (0, 0, 0, 1)])
+    bar = trimesh.creation.cylinder(5.0, 60.0, sections=48, transform=along_x)
+    scene = boxes(ReadPart("bar", "bar", ANTENNA, GREY, np.array(bar.vertices), np.array(bar.faces)))
+    places = [(x, 0.0, z) for z in (5.0, -5.0, 2.0, 0.0, -1.0) for x in (-20.0, 3.0, 20.0)]
+    assert ink_at(scene, FRONT, places) == [True] * 6 + [False] * 9
 
 
 def test_the_content_fills_the_picture_up_to_a_margin():
