@@ -7,6 +7,7 @@ import shutil
 import subprocess
 import tempfile
 import time
+from contextlib import suppress
 from pathlib import Path
 from urllib.request import Request, urlopen
 
@@ -67,10 +68,8 @@ class Browser:
     def close(self) -> None:
         """End the browser and its driver."""
         if self._root.rpartition("/")[2] != "session" and self._process.poll() is None:
-            try:
+            with suppress(OSError):
                 self._call("DELETE", "", None)
-            except OSError:
-                pass
         self._process.terminate()
         self._process.wait(PATIENCE_S)
         self._profile.cleanup()

@@ -42,7 +42,7 @@ def unit_normals(corners: Points) -> Points:
     """Outward unit normals of triangles, (m, 3); zero where a triangle has no area."""
     across = np.cross(corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0])
     length = np.linalg.norm(across, axis=1, keepdims=True)
-    return np.divide(across, length, out=np.zeros_like(across), where=length > 0.0)
+    return np.asarray(np.divide(across, length, out=np.zeros_like(across), where=length > 0.0))
 
 
 def sharp_edges(vertices: Points, triangles: Indices) -> Indices:
@@ -51,7 +51,7 @@ def sharp_edges(vertices: Points, triangles: Indices) -> Indices:
     sides = normals[ridges.sides]
     turn = np.einsum("ij,ij->i", sides[:, 0], sides[:, 1])
     whole = np.all(np.any(sides != 0.0, axis=2), axis=1)
-    return ridges.ends[whole & (turn < math.cos(math.radians(FEATURE_DEG)))]
+    return np.asarray(ridges.ends[whole & (turn < math.cos(math.radians(FEATURE_DEG)))])
 
 
 def thinned(vertices: Points, triangles: Indices, allowed_mm: float) -> tuple[Points, Indices]:

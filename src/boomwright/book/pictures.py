@@ -26,8 +26,8 @@ MARGIN_PX = 10
 ASPECT = (0.34, 0.78)
 """Least and most height of a picture, of its width."""
 
-PALE = 0.62
-"""How far the colour of a part that is not the point is moved toward the paper."""
+PALE, PALE_INK = 0.62, 0.45
+"""How far the colours of a part that is not the point, and of its lines, are moved toward the paper."""
 
 TAG_PX = 10.0
 
@@ -190,7 +190,7 @@ def _drawn(part: ScenePart, points: Points, in_full: bool) -> _Drawn:
     shades = colour * (DIM + (1.08 - DIM) * lit)[:, None]
     ink = INK_SHARE * colour
     if not in_full:
-        shades, ink = (each + PALE * (255.0 - each) for each in (shades, ink))
+        shades, ink = shades + PALE * (255.0 - shades), ink + PALE_INK * (255.0 - ink)
     ridges = ridges_of(part.triangles)
     outline = faces[ridges.sides[:, 0]] != faces[ridges.sides[:, 1]]
     ends = np.concatenate([part.edges, ridges.ends[outline]])

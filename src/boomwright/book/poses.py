@@ -23,6 +23,10 @@ GAP_SHARE = 0.08
 """Room between things taken apart, as a share of the antenna's length along the boom."""
 
 LEAST_GAP_MM = 8.0
+
+CRADLE_GAPS = 3.0
+"""How many times as far below all else the cradle stands: it is wide, and would be seen through the rods."""
+
 PULLS = {"x": 0, "z": 2}
 
 
@@ -84,7 +88,7 @@ class _Stand:
         self.mould = [room for room in rooms if room.group == "Mould"]
         # A part printed in a frame of its own has no place in the design: it stands on the bench.
         self.aids = [room for room in rooms if room.group not in ("Antenna", "Cradle", "Mould")]
-        self.home = {room.key: np.linalg.inv(room.frame) for room in rooms}
+        self.home: dict[str, Matrix] = {room.key: np.asarray(np.linalg.inv(room.frame), float) for room in rooms}
         boom = self.rooms["boom"]
         self.gap = max(LEAST_GAP_MM, GAP_SHARE * float(boom.high[0] - boom.low[0]))
 
@@ -100,7 +104,8 @@ class _Stand:
             for room in self.cradle:
                 places[room.key] = bench @ self.home[room.key]
             above = [room.key for room in (*self.antenna, *self.mould)]
-            drop = self._box(places, above)[0, 2] - self.gap - self._box(places, [r.key for r in self.cradle])[1, 2]
+            drop = self._box(places, above)[0, 2] - CRADLE_GAPS * self.gap
+            drop -= self._box(places, [room.key for room in self.cradle])[1, 2]
             for room in self.cradle:
                 places[room.key] = along(2, drop) @ places[room.key]
         shown = [room.key for room in (*self.antenna, *self.cradle, *self.mould)]
@@ -132,7 +137,7 @@ class _Stand:
         plan, driven = plan_former(self.plan.design, self.plan.shop)[0], self.plan.design.driven
         if "former" not in self.rooms:
             return None
-        places, shown = self.assembled().places | {"former": np.eye(4)}, ["former"]
+        places, shown = {**self.assembled().places, "former": np.eye(4)}, ["former"]
         if not plan.is_corner:
             height = (BASE_MM if plan.bends else JIG_FLOOR_MM) + plan.wire_mm / 2.0
             places["DE"] = _onto_former(driven.at_mm, self._lowest_mm(), height)

@@ -21,6 +21,7 @@ BATCH = 2_000_000
 
 DEPTH_STEPS = float(2**31)
 OWNER_BITS = 24
+OWNERS = np.int64((1 << OWNER_BITS) - 1)
 NOTHING = np.int64(-1)
 
 Points = NDArray[np.float64]
@@ -50,7 +51,8 @@ class Sheet:
     def fill(self, corners: Points, shades: Colours) -> None:
         """Triangles, once for all, with one colour each: corners in samples and depth, (m, 3, 3); colours (m, 3)."""
         self._shades = shades
-        size = np.cross(corners[:, 1, :2] - corners[:, 0, :2], corners[:, 2, :2] - corners[:, 0, :2])
+        b, c = corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0]
+        size = b[:, 0] * c[:, 1] - b[:, 1] * c[:, 0]
         owner = np.flatnonzero(size != 0.0)
         spans = _Spans(corners[owner], size[owner], self.canvas)
         counts = np.cumsum(spans.last - spans.first)
@@ -81,6 +83,10 @@ class Sheet:
         found[there] = level + canvas.far
         return found.reshape(canvas.height, canvas.width)
 
+    def owner(self) -> NDArray[np.int64]:
+        """Number of the triangle at every sample; means nothing where there is none, (height, width)."""
+        return (self._keys & OWNERS).reshape(self.canvas.height, self.canvas.width)
+
     def draw(
         self, lines: Points, ink: tuple[int, int, int], thickness: int, behind: NDArray[np.float32] | None
     ) -> None:
@@ -107,7 +113,7 @@ class Sheet:
         shades = np.concatenate([self._shades, np.array(self._inks, dtype=np.uint8)]).astype(np.uint32)
         # Ten bits a channel hold the sum of four samples: all three are added in one number.
         packed = (shades[:, 0] << 20) | (shades[:, 1] << 10) | shades[:, 2]
-        index = (self._keys & ((1 << OWNER_BITS) - 1)).astype(np.int32)
+        index = self.owner().ravel().astype(np.int32)
         index[self._keys < 0] = len(self._shades)
         inked = np.flatnonzero(self._ink)
         index[inked] = self._ink.ravel()[inked].astype(np.int32) + len(self._shades)

@@ -104,8 +104,8 @@ class Scene:
 
 
 @dataclass(frozen=True)
-class _Body:
-    """A body as read."""
+class ReadPart:
+    """A part as read: what a ScenePart is made of, corners in the file's frame [mm], (n, 3); triangles, (m, 3)."""
 
     key: str
     label: str
@@ -135,26 +135,26 @@ def read_scene(folder: Path, plan: Plan, manifest: Manifest) -> Scene:
     ]
     title = plan.design.title or plan.design.name
     through = tuple(hole.tag for hole in plan.seat.holes)
-    return Scene(title, tuple(_part(body) for body in bodies), axes_of(plan), poses_of(plan, rooms), through)
+    return Scene(title, tuple(part_of(body) for body in bodies), axes_of(plan), poses_of(plan, rooms), through)
 
 
-def _antenna_bodies(folder: Path, plan: Plan, manifest: Manifest) -> Iterable[_Body]:
+def _antenna_bodies(folder: Path, plan: Plan, manifest: Manifest) -> Iterable[ReadPart]:
     entry = next(e for e in manifest.entries if e.part == "antenna" and e.format == "step")
     reading = FORMATS["step"].read(folder / entry.path)
     for body in reading.bodies:
         meshes = [mesh_of(solid) for solid in body.solids]
         vertices, triangles = _joined(meshes)
-        yield _Body(body.name, _antenna_label(plan, body.name), ANTENNA, body.colour or PLAIN, vertices, triangles)
+        yield ReadPart(body.name, _antenna_label(plan, body.name), ANTENNA, body.colour or PLAIN, vertices, triangles)
 
 
-def _printed_body(folder: Path, entry: FileEntry, plan: Plan, printed: Sequence[FileEntry]) -> _Body:
+def _printed_body(folder: Path, entry: FileEntry, plan: Plan, printed: Sequence[FileEntry]) -> ReadPart:
     stem = Path(entry.path).stem
     reading = FORMATS["stl"].read(folder / entry.path)
     group = {"cradle": CRADLE, "mould": MOULD}.get(entry.part, AIDS)
     alone = sum(1 for other in printed if other.part == entry.part) == 1
     # The two halves must be told apart where they meet.
     colour = UPPER if stem == "mould-upper" else PRINTED
-    return _Body(stem, _printed_label(plan, stem, alone), group, colour, reading.vertices, reading.triangles)
+    return ReadPart(stem, _printed_label(plan, stem, alone), group, colour, reading.vertices, reading.triangles)
 
 
 def _joined(meshes: Sequence[tuple[NDArray[np.float64], NDArray[np.int64]]]) -> tuple[Any, Any]:
@@ -163,7 +163,7 @@ def _joined(meshes: Sequence[tuple[NDArray[np.float64], NDArray[np.int64]]]) -> 
     return np.concatenate([vertices for vertices, _ in meshes]), np.concatenate(triangles)
 
 
-def _thinned(bodies: Sequence[_Body]) -> list[_Body]:
+def _thinned(bodies: Sequence[ReadPart]) -> list[ReadPart]:
     """The printed bodies with fewer triangles, as many as a scene can carry."""
     thin = list(bodies)
     for allowed_mm in THIN_MM:
@@ -175,7 +175,8 @@ def _thinned(bodies: Sequence[_Body]) -> list[_Body]:
     return thin
 
 
-def _part(body: _Body) -> ScenePart:
+def part_of(body: ReadPart) -> ScenePart:
+    """The part to show: corners on a grid, edges found."""
     low, high = body.vertices.min(axis=0), body.vertices.max(axis=0)
     scale, offset = np.maximum(high - low, 1e-6) / (2.0 * STEPS), (low + high) / 2.0
     grid = np.clip(np.round((body.vertices - offset) / scale), -STEPS, STEPS).astype(np.int16)

@@ -16,7 +16,7 @@ import numpy as np
 
 from boomwright.errors import MeasureError
 from boomwright.formats.bodies import TOUCH_MM3, volume_mm3
-from boomwright.formats.brep import ReadBody, StepReading, Vector, exact_box
+from boomwright.formats.brep import ReadBody, StepReading, Vector, exact_box, explore
 
 Arguments = Mapping[str, Any]
 Shape = Any
@@ -139,7 +139,7 @@ def mesh_of(shape: Shape) -> tuple[Vector, Any]:
     from OCP.BRep import BRep_Tool
     from OCP.BRepBuilderAPI import BRepBuilderAPI_Copy
     from OCP.BRepMesh import BRepMesh_IncrementalMesh
-    from OCP.TopAbs import TopAbs_REVERSED
+    from OCP.TopAbs import TopAbs_FACE, TopAbs_REVERSED
     from OCP.TopLoc import TopLoc_Location
 
     copied = BRepBuilderAPI_Copy(shape, True, False).Shape()
@@ -147,16 +147,16 @@ def mesh_of(shape: Shape) -> tuple[Vector, Any]:
     points: list[Vector] = []
     triangles: list[Any] = []
     count = 0
-    for face in ReadBody("", None, copied).faces:
+    for face in explore(copied, TopAbs_FACE):
         place = TopLoc_Location()
-        mesh = BRep_Tool.Triangulation_s(face.face, place)
+        mesh = BRep_Tool.Triangulation_s(face, place)
         if mesh is None:
             continue
         motion = place.Transformation()
         nodes = [mesh.Node(i).Transformed(motion) for i in range(1, mesh.NbNodes() + 1)]
         points.append(np.array([[n.X(), n.Y(), n.Z()] for n in nodes]))
         corners = np.array([mesh.Triangle(i).Get() for i in range(1, mesh.NbTriangles() + 1)]) - 1 + count
-        triangles.append(corners[:, ::-1] if face.face.Orientation() == TopAbs_REVERSED else corners)
+        triangles.append(corners[:, ::-1] if face.Orientation() == TopAbs_REVERSED else corners)
         count += len(nodes)
     rounded = np.round(np.vstack(points), 7).astype(np.float64)
     merged, index = np.unique(rounded, axis=0, return_inverse=True)

@@ -16,8 +16,9 @@ from boomwright.book.pictures import ABOVE
 from boomwright.book.poses import Pose
 from boomwright.book.scene import GROUPS, Scene, ScenePart
 
-FILES = ("view.css", "three.min.js", "view.js")
-"""Style, library and viewer, beside this file."""
+STYLE, LICENSE, LIBRARY = "view.css", "three.LICENSE.txt", "three.min.js"
+VIEWER = ("view.js", "measure.js", "hands.js")
+"""Files beside this one."""
 
 WIDE_FROM = 1 << 16
 """Corner numbers from here on need 32 bits."""
@@ -40,13 +41,12 @@ def view_html(scene: Scene, still_png: bytes) -> str:
 
     Every class name begins with `bw-view`; a page may set the colours listed at the top of view.css.
     """
-    style, library, viewer = (files(__package__).joinpath(name).read_text("utf-8") for name in FILES)
     title = escape(scene.title)
     still = base64.b64encode(still_png).decode("ascii")
     return "\n".join(
         (
             f'<section class="bw-view" aria-label="The antenna in three dimensions: {title}">',
-            f"<style>\n{style}</style>",
+            f"<style>\n{_file(STYLE)}</style>",
             '<div class="bw-view-stage">',
             f'<img class="bw-view-still" alt="{title}: the whole antenna" src="data:image/png;base64,{still}">',
             f'<canvas tabindex="0" role="application" aria-label="{title}: turn it with the arrow keys"></canvas>',
@@ -61,10 +61,23 @@ def view_html(scene: Scene, still_png: bytes) -> str:
             f'<p class="bw-view-help">{HELP}</p>',
             "</div>",
             f'<script type="application/json">{scene_json(scene)}</script>',
-            f'<script>\n(function () {{\n"use strict";\n{library}\n{viewer}}})();\n</script>',
+            f"<script>\n{_script()}</script>",
             "</section>",
             "",
         )
+    )
+
+
+def _file(name: str) -> str:
+    return files(__package__).joinpath(name).read_text("utf-8")
+
+
+def _script() -> str:
+    """Library and viewer in one function, so that no name of theirs is seen outside; the licence goes with them."""
+    viewer = "\n".join(_file(name) for name in VIEWER)
+    return (
+        f"/*! three.js\n{_file(LICENSE).rstrip()}\n*/\n"
+        f'(function () {{\n"use strict";\n{_file(LIBRARY)}\n{viewer}\nstart();\n}})();\n'
     )
 
 
