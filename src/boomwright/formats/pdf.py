@@ -224,9 +224,7 @@ def _found(pattern: bytes, text: bytes) -> bytes:
     return match[1]
 
 
-def _drawn(
-    stream: bytes, unit_mm: float
-) -> tuple[tuple[PdfLine, ...], tuple[str, ...], tuple[SeenDimension, ...]]:
+def _drawn(stream: bytes, unit_mm: float) -> tuple[tuple[PdfLine, ...], tuple[str, ...], tuple[SeenDimension, ...]]:
     """Lines, words and dimensions of a page's content, by its operators; the matrix may scale and shift."""
     lines, words, stack = list[PdfLine](), list[str](), list[bytes]()
     seen, group = list[SeenDimension](), None

@@ -102,9 +102,7 @@ def _drawing(sheet: Sheet) -> DrawingPiece:
     marks = [Mark(Contour(s.vertices, s.closed), s.layer) for s in map(drawn, sheet.strokes)]
     lettering = tuple(_lettering(sized(words)) for words in sheet.words)
     dimensions = tuple(measured(one) for one in sheet.dimensions)
-    return DrawingPiece(
-        sheet.title.stem, "bench", tuple(marks), lettering, dimensions=dimensions, paper_scale=scale
-    )
+    return DrawingPiece(sheet.title.stem, "bench", tuple(marks), lettering, dimensions=dimensions, paper_scale=scale)
 
 
 def _page(sheet: Sheet) -> Page:

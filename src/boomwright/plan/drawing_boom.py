@@ -45,15 +45,16 @@ def seat_tables(plan: Plan) -> list[Block]:
         found.append(table_block(SEAT_HEAD, rows, 12))
     pockets = [g for g in seat.grooves if g.pocket]
     if pockets:
-        rows = [
-            (g.tag, shown(2.0 * g.pocket.half_x_mm), shown(2.0 * g.pocket.half_y_mm)) for g in pockets if g.pocket
-        ]
-        found.append(table_block(POCKET_HEAD, rows))
+        sizes = [(g.tag, shown(2.0 * g.pocket.half_x_mm), shown(2.0 * g.pocket.half_y_mm)) for g in pockets if g.pocket]
+        found.append(table_block(POCKET_HEAD, sizes))
     if seat.holes:
         bores = {shown(h.diameter_mm): "" for h in seat.holes}
-        rows = [(in_short([h.tag for h in seat.holes if shown(h.diameter_mm) == bore]), bore) for bore in bores]
-        found.append(table_block(HOLE_HEAD, rows, 12))
+        found.append(table_block(HOLE_HEAD, [(in_short(_holes(seat, bore)), bore) for bore in bores], 12))
     return found
+
+
+def _holes(seat: SeatPlan, bore: str) -> list[str]:
+    return [h.tag for h in seat.holes if shown(h.diameter_mm) == bore]
 
 
 def tags_of(plan: Plan, kind: tuple[str, str]) -> str:
@@ -162,16 +163,22 @@ def _section(plan: Plan) -> Block:
             (half * math.cos(start + sweep * i / 72.0), axis + half * math.sin(start + sweep * i / 72.0))
             for i in range(73)
         ]
-        view.run([(-rim, floor, math.tan(sweep / 8.0)), (*_on(axis, half, start + sweep / 2.0), math.tan(sweep / 8.0)),
-                  (rim, floor)], closed=True)
+        view.run(
+            [
+                (-rim, floor, math.tan(sweep / 8.0)),
+                (*_on(axis, half, start + sweep / 2.0), math.tan(sweep / 8.0)),
+                (rim, floor),
+            ],
+            closed=True,
+        )
     else:
         outer = [_on(axis, half, 2.0 * math.pi * i / 72.0) for i in range(72)]
         view.circle((0.0, axis), half, cross=False)
     if floor < seat.top_mm and boom.section == "round":
         for sign in (1.0, -1.0):
-            view.run([(sign * _reach(plan, z), z) for z in _levels(floor, seat.top_mm)], "HIDDEN")
+            view.run([(sign * _reach(plan, z), z) for z in _levels(floor, seat.top_mm)])
     elif floor < seat.top_mm:
-        view.run([(-half, floor), (-half, seat.top_mm), (half, seat.top_mm), (half, floor)], "HIDDEN")
+        view.run([(-half, floor), (-half, seat.top_mm), (half, seat.top_mm), (half, floor)])
     _inside(plan, view, outer)
     more = half + 2.5 / view.scale
     view.run([(-more, axis), (more, axis)], "CENTRE")

@@ -70,9 +70,9 @@ def _views(cradle: CradlePlan, scale: float) -> Block:
 
 def _side(cradle: CradlePlan, view: View) -> None:
     """Seen from the side: bearers with their notches, stops and saddles behind them."""
-    (x0, x1), _, (_, z1) = cradle.extent_mm
+    (x0, x1), _, _ = cradle.extent_mm
     height = cradle.axis_height_mm
-    view.rectangle((x0, x1), (0.0, z1), "HIDDEN")
+    view.run([(x0, 0.0), (x1, 0.0)])
     view.run([(x0 - 3.0 / view.scale, height), (x1 + 3.0 / view.scale, height)], "CENTRE")
     for bearer in cradle.bearers[:1] if cradle.rails is not None else cradle.bearers:
         low, high = bearer.x_mm
@@ -82,9 +82,11 @@ def _side(cradle: CradlePlan, view: View) -> None:
             left, right = max(notch.at_mm - half, low), min(notch.at_mm + half, high)
             points += [(left, notch.apex_mm + notch.at_mm - left), (notch.at_mm, notch.apex_mm)]
             points += [(right, notch.apex_mm + right - notch.at_mm)]
-        points = [p for p in points if p != (low, height) or bearer.notches[0].at_mm - low > height - bearer.notches[0].apex_mm]
-        last = bearer.notches[-1]
-        points += [(high, height)] if high - last.at_mm > height - last.apex_mm else []
+        first, last = bearer.notches[0], bearer.notches[-1]
+        if first.at_mm - low <= height - first.apex_mm:
+            points.remove((low, height))
+        if high - last.at_mm > height - last.apex_mm:
+            points.append((high, height))
         view.run([*points, (high, 0.0)], closed=True)
     for saddle in cradle.saddles:
         view.rectangle(saddle.x_mm, (0.0, saddle.top_mm), "HIDDEN")

@@ -59,9 +59,7 @@ def size_rows(driven: Driven) -> list[tuple[str, str]]:
 def bend_table(plan: Plan) -> Block:
     """Marks and posts as the former has them."""
     bends = plan_former(plan.design, plan.shop)[0].bends
-    rows = [
-        (str(i), shown(b.mark_mm), shown(b.post_mm), f"{b.turn_deg:.1f}") for i, b in enumerate(bends or (), 1)
-    ]
+    rows = [(str(i), shown(b.mark_mm), shown(b.post_mm), f"{b.turn_deg:.1f}") for i, b in enumerate(bends or (), 1)]
     return table_block(BEND_HEAD, rows)
 
 
@@ -89,7 +87,9 @@ def _shape(driven: Driven, scale: float) -> Block:
         _tube(view, driven, conductor)
     {"straight": _straight, "folded": _folded, "loop": _loop}[driven.form](view, driven, r)
     box = view.block().box
-    title = {"straight": "DRIVEN ELEMENT", "folded": "DRIVEN ELEMENT, FOLDED", "loop": "DRIVEN ELEMENT, LOOP"}[driven.form]
+    title = {"straight": "DRIVEN ELEMENT", "folded": "DRIVEN ELEMENT, FOLDED", "loop": "DRIVEN ELEMENT, LOOP"}[
+        driven.form
+    ]
     seen = ", seen from above" if driven.form == "straight" or driven.plane == "flat" else ", seen from the front"
     view.write(title + seen, ((box[0] + box[2]) / 2.0, box[1] - 6.0), middle=True)
     return view.block()
@@ -108,9 +108,9 @@ def _tube(view: View, driven: Driven, runs: Sequence[Run]) -> None:
             view.run(_joined(points))
         else:
             view.run(_joined(points), "CENTRE")
-    for run, end in ((runs[0], 0), (runs[-1], 1)):
+    for run, last in ((runs[0], 0), (runs[-1], 1)):
         start, stop, _, left = _bent(driven, run)
-        (x, y), (u, v) = (start, stop)[end], left[end]
+        (x, y), (u, v) = (start, stop)[last], left[last]
         view.run([(x - r * u, y - r * v), (x + r * u, y + r * v)])
 
 

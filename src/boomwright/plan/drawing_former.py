@@ -43,8 +43,8 @@ def _plate(former: FormerPlan, scale: float) -> Block:
     view = View(scale)
     (x0, x1), (y0, y1) = former.x_mm, former.y_mm
     view.rectangle(former.x_mm, former.y_mm)
-    for x, y in former.walls:
-        view.rectangle(x, y)
+    for wall in former.walls:
+        view.rectangle(*wall)
     r = former.wire_mm / 2.0
     for bend in former.posts:
         (x, y), (u, v) = bend.start, bend.inward

@@ -54,9 +54,7 @@ class Stroke:
 
     @property
     def points(self) -> tuple[Point, ...]:
-        """The run as straight pieces, arcs as chords no farther than 0.01 from them; closed runs end where they began.
-
-        """
+        """The run as straight pieces, arcs as chords within 0.01 of them; closed runs end where they began."""
         found = list[Point]()
         ends = [*self.vertices[1:], *(self.vertices[:1] if self.closed else ())]
         for (x0, y0, bulge), (x1, y1, _) in zip(self.vertices, ends, strict=False):

@@ -71,6 +71,7 @@ def _views(plan: Plan, scale: float) -> Block:
     rear.straight("block across", "x", ((y0, z1), (y1, z1)), up + 16.0)
     rear.straight("datum above base", "y", ((y1, z0), (0.0, 0.0)), rear.at((y1, 0.0))[0] + 9.0)
     rear.run([(y0 - 2.0 / scale, 0.0), (y1 + 2.0 / scale, 0.0)], "CENTRE")
+    low = min(low, side.at((0.0, axis - 1.3 * half))[1])
     side.write("FROM THE SIDE", (side.at(((x0 + x1) / 2.0, 0.0))[0], low - 7.0), middle=True)
     rear.write("FROM THE REAR", (rear.at((0.0, 0.0))[0], low - 7.0), middle=True)
     side.take(rear)
@@ -88,10 +89,10 @@ def _parting(mould: MouldPlan, view: View, across: Point, upward: Point) -> None
 
 def _crossings(mould: MouldPlan) -> list[Point]:
     """Where conductors leave the block at its +y side, in x and z."""
-    found = []
+    found, (x, _, z) = [], mould.block
     for runs in mould.conductors:
         for end in (runs[0].start, runs[-1].end):
-            if end[1] > mould.cavity.along.span_mm[1]:
+            if end[1] > mould.cavity.along.span_mm[1] and x[0] < end[0] < x[1] and z[0] < end[2] < z[1]:
                 found.append((round(end[0], 6), round(end[2], 6)))
     return list(dict.fromkeys(found))
 

@@ -96,9 +96,7 @@ def detail_scale(size_mm: float, target_mm: float) -> float:
 
 
 def lay_sheet(title: Title, size_mm: tuple[float, float], build: Build) -> Sheet:
-    """A sheet at the largest scale at which what `build` makes of a scale finds room; the first block is the main one.
-
-    """
+    """A sheet at the largest scale at which the blocks that `build` makes find room; the first is the main one."""
     sheet = Sheet(title, size_mm, SCALES[-1], Block())
     for scale in SCALES:
         blocks = build(scale)
@@ -169,7 +167,7 @@ def _free(spot: Box, area: Box, taken: Sequence[Box]) -> bool:
 
 def _centred(placed: list[Block], taken: list[Box], area: Box, title: Box) -> list[Block]:
     """All of it moved toward the sheet's middle as far as the title block lets it."""
-    x0, y0, x1, y1 = box_of(taken)
+    x0, y0, x1, _ = box_of(taken)
     for share in (1.0, 0.5, 0.0):
         dx = (area[2] - x1 - (x0 - area[0])) / 2.0
         dy = -share * (y0 - area[1]) / 2.0 if share else 0.0
@@ -194,7 +192,12 @@ def _frame_strokes(sheet: Sheet) -> tuple[Stroke, ...]:
         view.run([(x, y), (x + dx, y + dy)], "FRAME")
     for y in (y0 + 10.0, y0 + 22.0):
         view.run([(left, y), (x1, y)], "TABLE")
-    for x, low, high in ((left + 118.0, 0.0, 34.0), (left + 148.0, 10.0, 22.0), (left + 62.0, 0.0, 10.0), (left + 78.0, 10.0, 22.0)):
+    for x, low, high in (
+        (left + 118.0, 0.0, 34.0),
+        (left + 148.0, 10.0, 22.0),
+        (left + 62.0, 0.0, 10.0),
+        (left + 78.0, 10.0, 22.0),
+    ):
         view.run([(x, y0 + low), (x, y0 + high)], "TABLE")
     view.strokes += _first_angle((left + 134.0, y0 + 5.0))
     return tuple(view.strokes)

@@ -24,7 +24,10 @@ from boomwright.plan.drawing_marks import (
 
 ARROW_MM = 2.5
 CLEAR_MM = 1.0
-"""Between an outline and the extension line that starts at it, and between a line and the text beside it."""
+"""Between an outline and the extension line that starts at it."""
+
+BESIDE_MM = 1.2
+"""Between a dimension line and its text: clear of the arrowheads."""
 
 OVERRUN_MM = 1.5
 """How far an extension line runs past the dimension line."""
@@ -106,7 +109,7 @@ class View:
         low, high = a[k], b[k]
         width = words_width_mm(text, TEXT_MM)
         wide = high - low >= 2.0 * ARROW_MM + 1.0
-        inside = wide and high - low >= width + 1.0
+        inside = wide and high - low >= width + 2.0
         strokes = [line_of(*_extension(p, at_mm, k)) for p in (a, b)]
         strokes += [_arrow(_placed(low, at_mm, k), k, -1.0 if wide else 1.0)]
         strokes += [_arrow(_placed(high, at_mm, k), k, 1.0 if wide else -1.0)]
@@ -117,12 +120,10 @@ class View:
             tail = max(tail, high + 1.0)
             strokes.append(line_of(_placed(high, at_mm, k), _placed(tail + width + 0.5, at_mm, k)))
         start = (low + high - width) / 2.0 if inside else tail
-        place = (start, at_mm + CLEAR_MM) if k == 0 else (at_mm - CLEAR_MM, start)
+        place = (start, at_mm + BESIDE_MM) if k == 0 else (at_mm - BESIDE_MM, start)
         words = Words(text, *place, upright=k == 1)
         line = (_placed(low, at_mm, k), _placed(high, at_mm, k))
-        self.dimensions.append(
-            Dimension(name, axis, value, text, (a, b), line, self.scale, tuple(strokes), words)
-        )
+        self.dimensions.append(Dimension(name, axis, value, text, (a, b), line, self.scale, tuple(strokes), words))
 
     def running(self, marks: Sequence[tuple[str, str, float]], from_y: float, at_mm: float) -> None:
         """Running dimensions along x from zero, one line for all, each text upright above its place with its tag.
@@ -157,15 +158,20 @@ class View:
 
     def radius(self, name: str, middle: Point, radius: float, angle_deg: float, out_mm: float = 6.0) -> None:
         """A radius from the centre to the arc and on to its text."""
-        self._round(name, "radius", middle, radius, angle_deg, out_mm)
+        self._round(name, "radius", (middle, radius), (angle_deg, out_mm))
 
     def diameter(self, name: str, middle: Point, radius: float, angle_deg: float, out_mm: float = 6.0) -> None:
         """A diameter right across and on to its text."""
-        self._round(name, "diameter", middle, radius, angle_deg, out_mm)
+        self._round(name, "diameter", (middle, radius), (angle_deg, out_mm))
 
     def _round(
-        self, name: str, kind: Literal["radius", "diameter"], middle: Point, radius: float, angle_deg: float, out_mm: float
+        self,
+        name: str,
+        kind: Literal["radius", "diameter"],
+        circle: tuple[Point, float],
+        leader: tuple[float, float],
     ) -> None:
+        (middle, radius), (angle_deg, out_mm) = circle, leader
         c, s = math.cos(math.radians(angle_deg)), math.sin(math.radians(angle_deg))
         reach = self.scale * radius
         (mx, my) = self.at(middle)
