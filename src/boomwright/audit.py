@@ -22,9 +22,8 @@ from boomwright.electrical import Electrical, read_back
 from boomwright.errors import AccessError, Fault, InputFault, MeasureError
 from boomwright.formats.catalogue import FORMATS
 from boomwright.judging import DIGITS, Finding, bench_for, judge_all
-from boomwright.manifest import BOOK_PROCESS
+from boomwright.manifest import BOOK_PROCESS, Manifest, read_manifest, sum_of
 from boomwright.manifest import FILE as MANIFEST_FILE
-from boomwright.manifest import Manifest, read_manifest, sum_of
 from boomwright.parts.catalogue import PARTS
 from boomwright.parts.coupon import COUPONS
 from boomwright.pieces import Expectation

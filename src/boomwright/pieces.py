@@ -9,6 +9,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any, Literal
 
+from boomwright.plan.drawing_marks import Dimension
 from boomwright.plan.frame import IDENTITY, Matrix
 
 if TYPE_CHECKING:
@@ -19,6 +20,7 @@ __all__ = [
     "Body",
     "Colour",
     "Contour",
+    "Dimension",
     "DrawingPiece",
     "Expectation",
     "Lettering",
@@ -92,18 +94,23 @@ class Mark:
 
 @dataclass(frozen=True)
 class Lettering:
-    """Text on a drawing that no machine follows (a drawing's own annotation) [mm]."""
+    """Text on a drawing that no machine follows (a drawing's own annotation) [mm]; `upright` reads along +y."""
 
     text: str
     x_mm: float
     y_mm: float
     height_mm: float
     layer: str
+    upright: bool = False
 
 
 @dataclass(frozen=True)
 class DrawingPiece:
-    """A flat drawing at true scale [mm] for one DXF file. The kerf is already taken; `offsets` says how much."""
+    """A flat drawing at true scale [mm] for one DXF file. The kerf is already taken; `offsets` says how much.
+
+    dimensions   with their points in the drawing's coordinates
+    paper_scale  of a drawing to be read on paper: millimetres of paper per millimetre; 0 for one that a machine follows
+    """
 
     stem: str
     process: Process
@@ -111,6 +118,8 @@ class DrawingPiece:
     lettering: tuple[Lettering, ...] = ()
     frame: Matrix = IDENTITY
     offsets: Mapping[str, float] = field(default_factory=dict)
+    dimensions: tuple[Dimension, ...] = ()
+    paper_scale: float = 0.0
 
 
 @dataclass(frozen=True)
@@ -149,10 +158,11 @@ class PicturePiece:
 
 @dataclass(frozen=True)
 class Page:
-    """One page at true scale: straight lines and words [mm], from its lower left corner."""
+    """One page: straight lines, words and dimensions [mm], from its lower left corner."""
 
     marks: tuple[Mark, ...]
     lettering: tuple[Lettering, ...] = ()
+    dimensions: tuple[Dimension, ...] = ()
 
 
 @dataclass(frozen=True)

@@ -12,13 +12,13 @@ import numpy as np
 import pytest
 import samples
 
-from boomwright.judging import Bench
 from boomwright.design.model import Design
 from boomwright.formats.brep import StepReading
 from boomwright.formats.meshes import CHORD_MM, ROUNDING_MM
 from boomwright.formats.step import STEP
 from boomwright.formats.stl import STL
 from boomwright.formats.surfaces import samples as samples_of
+from boomwright.judging import Bench
 from boomwright.parts.antenna import AntennaPart, antenna_bodies
 from boomwright.parts.mould import Mould
 from boomwright.parts.mould_halves import cavity_shape, half_shape

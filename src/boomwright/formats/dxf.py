@@ -11,7 +11,9 @@ from pathlib import Path
 from typing import Any
 
 from boomwright.errors import CatalogueError, MeasureError
-from boomwright.formats import assembly, edges, outlines, plates, slots
+from boomwright.formats import assembly, dimensions, edges, outlines, plates, slots
+from boomwright.formats.dimensions import SeenWords
+from boomwright.formats.dxf_dimensions import add_dimension, add_words, layer_style, prepare, seen_dimension
 from boomwright.formats.format import FileEntry, Format
 from boomwright.formats.outlines import DxfReading, Outline
 from boomwright.pieces import DrawingPiece, Expectation, Piece, Probe
@@ -30,6 +32,7 @@ MEASURES = {
     "edge_at": edges.measure_edge,
     **plates.MEASURES,
     **assembly.MEASURES,
+    **dimensions.MEASURES,
 }
 
 
@@ -61,9 +64,12 @@ class Dxf(Format):
         except (OSError, DXFError, UnicodeError, ValueError, KeyError, IndexError, TypeError) as error:
             raise MeasureError(f"{path.name}: not a readable DXF file ({error})") from error
         audit = document.audit()
-        found = [outline for entity in document.modelspace() for outline in _outlines(entity)]
+        space = document.modelspace()
+        found = [outline for entity in space for outline in _outlines(entity)]
         unit = int(document.header.get("$INSUNITS", 0))
-        return DxfReading(path, tuple(found), len(audit.errors) + len(audit.fixes), unit)
+        seen = tuple(seen_dimension(entity) for entity in space.query("DIMENSION"))
+        words = tuple(_words(entity) for entity in space.query("TEXT"))
+        return DxfReading(path, tuple(found), len(audit.errors) + len(audit.fixes), unit, seen, words)
 
     def measure(self, reading: Any, probe: Probe, also: Sequence[Any]) -> float:
         """One quantity; the measures are listed in `MEASURES`."""
@@ -120,14 +126,24 @@ def _document(piece: DrawingPiece) -> Any:
     document.header["$INSUNITS"] = MILLIMETRES
     document.header["$MEASUREMENT"] = 1
     space = document.modelspace()
-    names = sorted({mark.layer for mark in piece.marks} | {text.layer for text in piece.lettering})
-    for index, name in enumerate(names):
+    names = {mark.layer for mark in piece.marks} | {text.layer for text in piece.lettering}
+    names |= {stroke.layer for dimension in piece.dimensions for stroke in dimension.strokes}
+    if piece.paper_scale:
+        prepare(document, piece.paper_scale)
+    for index, name in enumerate(sorted(names)):
         if name not in document.layers:
-            document.layers.add(name, color=LAYER_COLOURS[index % len(LAYER_COLOURS)])
+            layer = document.layers.add(name, color=LAYER_COLOURS[index % len(LAYER_COLOURS)])
+            if piece.paper_scale:
+                layer.update_dxf_attribs(layer_style(name))
     for mark in piece.marks:
         contour = mark.contour
         space.add_lwpolyline(contour.vertices, format="xyb", close=contour.closed, dxfattribs={"layer": mark.layer})
+    for dimension in piece.dimensions:
+        add_dimension(document, dimension, piece.paper_scale)
     for text in piece.lettering:
+        if piece.paper_scale:
+            add_words(space, text, text.layer)
+            continue
         attributes = {"layer": text.layer, "insert": (text.x_mm, text.y_mm)}
         space.add_text(text.text, height=text.height_mm, dxfattribs=attributes)
     # Saving would enter these in the order of a set, which changes from process to process.
@@ -138,6 +154,11 @@ def _document(piece: DrawingPiece) -> Any:
         xs, ys = zip(*points, strict=True)
         document.header["$EXTMIN"], document.header["$EXTMAX"] = (min(xs), min(ys), 0.0), (max(xs), max(ys), 0.0)
     return document
+
+
+def _words(entity: Any) -> SeenWords:
+    x, y, _ = entity.dxf.insert
+    return SeenWords(str(entity.dxf.text), float(x), float(y), float(entity.dxf.height))
 
 
 def _outlines(entity: Any) -> Iterator[Outline]:

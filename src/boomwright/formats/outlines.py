@@ -15,6 +15,7 @@ import numpy as np
 
 from boomwright.errors import MeasureError
 from boomwright.formats.bodies import extent_of
+from boomwright.formats.dimensions import SeenDimension, SeenWords
 
 Arguments = Mapping[str, Any]
 Vertex = tuple[float, float, float]
@@ -124,6 +125,13 @@ class DxfReading:
     outlines: tuple[Outline, ...]
     audit_errors: int
     unit_code: int
+    dimensions: tuple[SeenDimension, ...] = ()
+    placed_words: tuple[SeenWords, ...] = ()
+
+    @property
+    def words(self) -> tuple[str, ...]:
+        """Every text, those of dimensions included."""
+        return (*(w.text for w in self.placed_words), *(d.text for d in self.dimensions))
 
     def on(self, layer: Any) -> list[Outline]:
         """Outlines of one layer, or all."""

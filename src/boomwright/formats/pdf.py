@@ -6,6 +6,7 @@ marked content named by their layer ([ISO 32000-1] 14.6), by which the reader te
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
@@ -14,8 +15,11 @@ from pathlib import Path
 from typing import Any
 
 from boomwright.errors import CatalogueError, MeasureError
+from boomwright.formats import dimensions
+from boomwright.formats.dimensions import SeenDimension
 from boomwright.formats.format import FileEntry, Format
-from boomwright.pieces import Expectation, Mark, Page, PagesPiece, Piece, Probe
+from boomwright.pieces import Dimension, Expectation, Lettering, Mark, Page, PagesPiece, Piece, Probe
+from boomwright.plan.drawing_marks import Words
 from boomwright.shop.profile import Shop
 from boomwright.units import MM_PER_INCH
 
@@ -24,7 +28,20 @@ CAPITAL_SHARE = 0.718
 """Height of Helvetica's capitals as a share of the font's size."""
 
 HAIRLINE_MM, LINE_MM = 0.1, 0.2
-DASHED = {"MIDDLE": "[6 2 1 2] 0 d", "FOLD": "[2 2] 0 d", "MATCH": "[1 1] 0 d"}
+DASHED = {
+    "MIDDLE": "[6 2 1 2] 0 d",
+    "FOLD": "[2 2] 0 d",
+    "MATCH": "[1 1] 0 d",
+    "HIDDEN": "[3 1.5] 0 d",
+    "CENTRE": "[8 1.5 1 1.5] 0 d",
+}
+WIDTHS_MM = {
+    "VISIBLE": 0.5,
+    "FRAME": 0.5,
+    **dict.fromkeys(("HIDDEN", "CENTRE", "DIMENSION", "HATCH", "TABLE"), 0.25),
+}
+"""Of drawings, by ISO 128; the layers of other pages are thinner."""
+
 NEAR_MM = 2.0
 UPRIGHT_MM = 1e-6
 OPERANDS = re.compile(rb"\((?:\\.|[^\\)])*\)|/[^\s/()<>\[\]]+|\[[^\]]*\]|[^\s()]+", re.DOTALL)
@@ -41,11 +58,12 @@ class PdfLine:
 
 @dataclass(frozen=True)
 class PdfPage:
-    """Size, lines and words of one page [mm]."""
+    """Size, lines, words and dimensions of one page [mm]."""
 
     size_mm: tuple[float, float]
     lines: tuple[PdfLine, ...]
     words: tuple[str, ...]
+    dimensions: tuple[SeenDimension, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -81,8 +99,11 @@ class Pdf(Format):
 
     def measure(self, reading: Any, probe: Probe, also: Sequence[Any]) -> float:
         """One quantity; the measures are listed in `MEASURES`."""
-        if probe.measure not in MEASURES:
-            raise CatalogueError(f"unknown PDF measure {probe.measure!r} (known: {', '.join(MEASURES)})")
+        known = [*MEASURES, *dimensions.MEASURES]
+        if probe.measure not in known:
+            raise CatalogueError(f"unknown PDF measure {probe.measure!r} (known: {', '.join(known)})")
+        if probe.measure in dimensions.MEASURES:
+            return dimensions.MEASURES[probe.measure](_page(reading, probe.arguments), probe.arguments, also)
         return MEASURES[probe.measure](reading, probe.arguments)
 
     def expect(self, entry: FileEntry, shop: Shop) -> tuple[Expectation, ...]:
@@ -122,11 +143,30 @@ def _content(page: Page) -> bytes:
     lines = [f"{POINTS_PER_MM:.10f} 0 0 {POINTS_PER_MM:.10f} 0 0 cm".encode("ascii"), b"1 J"]
     for mark in page.marks:
         lines.append(_stroke(mark))
-    for text in page.lettering:
-        size = text.height_mm / CAPITAL_SHARE
-        place = f"BT /F1 {size:.4f} Tf {text.x_mm:.4f} {text.y_mm:.4f} Td ".encode("ascii")
-        lines.append(place + _text(text.text) + b" Tj ET")
+    lines += [_dimension(dimension) for dimension in page.dimensions]
+    lines += [_words(text) for text in page.lettering]
     return b"\n".join(lines)
+
+
+def _words(text: Lettering | Words) -> bytes:
+    size = text.height_mm / CAPITAL_SHARE
+    place = f"{text.x_mm:.4f} {text.y_mm:.4f}"
+    move = f"0 1 -1 0 {place} Tm" if text.upright else f"{place} Td"
+    return f"BT /F1 {size:.4f} Tf {move} ".encode("ascii") + _text(text.text) + b" Tj ET"
+
+
+def _dimension(dimension: Dimension) -> bytes:
+    """A group of marked content that carries the dimension's name and its view's scale; the dimension line first."""
+    runs = [dimension.line, *(stroke.points for stroke in dimension.strokes)]
+    name = b"/DIMENSION << /Name " + _text(dimension.name) + b" /Scale " + f"{dimension.scale:.10g}".encode("ascii")
+    width = f"{WIDTHS_MM['DIMENSION']:g} w [] 0 d ".encode("ascii")
+    paths = " ".join(f"{_path(run)} S" for run in runs).encode("ascii")
+    return name + b" >> BDC " + width + paths + b" " + _words(dimension.words) + b" EMC"
+
+
+def _path(points: Sequence[tuple[float, float]]) -> str:
+    first, *rest = [f"{x:.4f} {y:.4f}" for x, y in points]
+    return " ".join([f"{first} m", *(f"{point} l" for point in rest)])
 
 
 def _stroke(mark: Mark) -> bytes:
@@ -134,9 +174,8 @@ def _stroke(mark: Mark) -> bytes:
         raise ValueError(f"{mark.layer!r} is no layer's name")
     if any(bulge for _, _, bulge in mark.contour.vertices):
         raise ValueError("a page takes straight lines only")
-    width = HAIRLINE_MM if mark.layer in DASHED else LINE_MM
-    first, *rest = [f"{x:.4f} {y:.4f}" for x, y, _ in mark.contour.vertices]
-    path = " ".join([f"{first} m", *(f"{point} l" for point in rest), "s" if mark.contour.closed else "S"])
+    width = WIDTHS_MM.get(mark.layer, HAIRLINE_MM if mark.layer in DASHED else LINE_MM)
+    path = _path([(x, y) for x, y, _ in mark.contour.vertices]) + (" s" if mark.contour.closed else " S")
     return f"/{mark.layer} BMC {width:g} w {DASHED.get(mark.layer, '[] 0 d')} {path} EMC".encode("ascii")
 
 
@@ -175,8 +214,7 @@ def _pages(data: bytes) -> Iterator[PdfPage]:
         stream = _found(rb"stream\n(.*)\nendstream", content)
         if len(stream) != int(_found(rb"/Length (\d+)", content)):
             raise ValueError("a page's content is not as long as it says")
-        lines, words = _drawn(stream, scale)
-        yield PdfPage(((box[2] - box[0]) * scale, (box[3] - box[1]) * scale), lines, words)
+        yield PdfPage(((box[2] - box[0]) * scale, (box[3] - box[1]) * scale), *_drawn(stream, scale))
 
 
 def _found(pattern: bytes, text: bytes) -> bytes:
@@ -186,9 +224,10 @@ def _found(pattern: bytes, text: bytes) -> bytes:
     return match[1]
 
 
-def _drawn(stream: bytes, unit_mm: float) -> tuple[tuple[PdfLine, ...], tuple[str, ...]]:
-    """Lines and words of a page's content, by its operators; the matrix may scale and shift."""
+def _drawn(stream: bytes, unit_mm: float) -> tuple[tuple[PdfLine, ...], tuple[str, ...], tuple[SeenDimension, ...]]:
+    """Lines, words and dimensions of a page's content, by its operators; the matrix may scale and shift."""
     lines, words, stack = list[PdfLine](), list[str](), list[bytes]()
+    seen, group = list[SeenDimension](), None
     matrix, layer, path = (1.0, 1.0, 0.0, 0.0), "", list[tuple[float, float]]()
     for token in OPERANDS.findall(stream):
         if token == b"cm":
@@ -205,15 +244,27 @@ def _drawn(stream: bytes, unit_mm: float) -> tuple[tuple[PdfLine, ...], tuple[st
             lines += [PdfLine(layer, one, two) for one, two in pairwise(run)]
         elif token == b"BMC":
             layer = stack[-1][1:].decode("ascii")
+        elif token == b"BDC":
+            layer = stack[0][1:].decode("ascii")
+            group = (_unescaped(stack[stack.index(b"/Name") + 1]), float(stack[stack.index(b"/Scale") + 1]), len(lines))
         elif token == b"EMC":
-            layer = ""
+            if group is not None:
+                name, scale, first = group
+                line = lines[first]
+                seen.append(SeenDimension(name, words[-1], math.dist(line.start, line.end) / scale, scale))
+            layer, group = "", None
         elif token == b"Tj":
-            words.append(re.sub(rb"\\(.)", rb"\1", stack[-1][1:-1]).decode("cp1252"))
+            words.append(_unescaped(stack[-1]))
         else:
             stack.append(token)
             continue
         stack.clear()
-    return tuple(lines), tuple(words)
+    return tuple(lines), tuple(words), tuple(seen)
+
+
+def _unescaped(text: bytes) -> str:
+    """The characters of a string object."""
+    return re.sub(rb"\\(.)", rb"\1", text[1:-1]).decode("cp1252")
 
 
 def _page(reading: PdfReading, arguments: Mapping[str, Any]) -> PdfPage:

@@ -11,6 +11,8 @@ from typing import Any
 from xml.etree import ElementTree
 
 from boomwright.errors import CatalogueError, MeasureError
+from boomwright.formats import dimensions
+from boomwright.formats.dimensions import SeenDimension
 from boomwright.formats.format import FileEntry, Format
 from boomwright.pieces import Expectation, PicturePiece, Piece, Probe
 from boomwright.shop.profile import Shop
@@ -35,13 +37,26 @@ class Ring:
 
 @dataclass
 class PictureReading:
-    """A chart, read once: points of every named curve, tick places with their numbers by axis, rings, active parts."""
+    """A chart or drawing, read once: points of every named curve, tick places with their numbers by axis, rings, active
+    parts; every text, and of dimensions (their lines are curves) text and scale by name.
+    """
 
     path: Path
     curves: dict[str, list[Point]] = field(default_factory=dict)
     ticks: dict[str, list[Point]] = field(default_factory=dict)
     rings: list[Ring] = field(default_factory=list)
     active: int = 0
+    words: list[str] = field(default_factory=list)
+    noted: dict[str, tuple[str, float]] = field(default_factory=dict)
+
+    @property
+    def dimensions(self) -> tuple[SeenDimension, ...]:
+        """Every dimension, its line's length in the view's own scale."""
+        found = []
+        for name, (text, scale) in self.noted.items():
+            points = self.curve(name)
+            found.append(SeenDimension(name, text, math.dist(points[0], points[-1]) / scale, scale))
+        return tuple(found)
 
     def curve(self, name: str) -> list[Point]:
         """The points of a curve. Raises MeasureError when there is no such curve."""
@@ -87,8 +102,11 @@ class Svg(Format):
 
     def measure(self, reading: Any, probe: Probe, also: Sequence[Any]) -> float:
         """One quantity; the measures are listed in `MEASURES`."""
+        if probe.measure in dimensions.MEASURES:
+            return dimensions.MEASURES[probe.measure](reading, probe.arguments, also)
         if probe.measure not in MEASURES:
-            raise CatalogueError(f"unknown SVG measure {probe.measure!r} (known: {', '.join(MEASURES)})")
+            known = [*MEASURES, *dimensions.MEASURES]
+            raise CatalogueError(f"unknown SVG measure {probe.measure!r} (known: {', '.join(known)})")
         return MEASURES[probe.measure](reading, probe.arguments)
 
     def expect(self, entry: FileEntry, shop: Shop) -> tuple[Expectation, ...]:
@@ -110,6 +128,10 @@ def _take(element: ElementTree.Element, reading: PictureReading) -> None:
     elif curve is not None:
         pairs = [pair.split(",") for pair in get.get("points", "").split()]
         reading.curves.setdefault(curve, []).extend((float(pair[0]), float(pair[1])) for pair in pairs)
+    if tag == "text":
+        reading.words.append(element.text or "")
+    if "data-dimension" in get:
+        reading.noted[get["data-dimension"]] = (element.text or "", float(get["data-scale"]))
     if "data-axis" in get:
         axis = get["data-axis"]
         place = float(get[axis]) - float(get.get("data-shift", "0"))

@@ -27,6 +27,7 @@ _OWN = (
     "boomwright.parts.gauge:LengthGauge",
     "boomwright.parts.guide:GrooveGuide",
     "boomwright.parts.cut_block:CutBlockPart",
+    "boomwright.parts.drawings:DrawingsPart",
     "boomwright.parts.prediction:PredictionPart",
 )
 
