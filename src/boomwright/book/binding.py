@@ -30,6 +30,12 @@ DRAWN = {
     Picture.E_PLANE: "rf/e-plane.svg",
     Picture.H_PLANE: "rf/h-plane.svg",
     Picture.CURRENTS: "rf/currents.svg",
+    Picture.BOOM_DRAWING: "bench/drawing-boom.svg",
+    Picture.ROD_TABLE: "bench/drawing-rods.svg",
+    Picture.DRIVEN_DRAWING: "bench/drawing-driven.svg",
+    Picture.CRADLE_DRAWING: "bench/drawing-cradle.svg",
+    Picture.MOULD_DRAWING: "bench/drawing-mould.svg",
+    Picture.FORMER_DRAWING: "bench/drawing-former.svg",
 }
 """Pictures that stand in the folder already."""
 
@@ -55,7 +61,7 @@ def write_book(folder: Path, plan: Plan, prediction: Prediction, manifest: Manif
     run = Run(plan, prediction, manifest, audit, _volumes_mm3(audit))
     scene = read_scene(folder, plan, manifest)
     illustrations = {
-        key: Illustration("svg", (folder / path).read_bytes(), f"chart: {key.value}")
+        key: Illustration("svg", (folder / path).read_bytes(), key.value.replace("-", " "))
         for key, path in DRAWN.items()
         if (folder / path).is_file()
     }

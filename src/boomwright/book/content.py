@@ -28,8 +28,12 @@ class Picture(StrEnum):
     """The pictures that chapters refer to."""
 
     ANTENNA = "antenna"
-    BOOM_DRAWING = "boom-drawing"
-    ROD_TABLE = "rod-table"
+    BOOM_DRAWING = "drawing-boom"
+    ROD_TABLE = "drawing-rods"
+    DRIVEN_DRAWING = "drawing-driven"
+    CRADLE_DRAWING = "drawing-cradle"
+    MOULD_DRAWING = "drawing-mould"
+    FORMER_DRAWING = "drawing-former"
     CRADLE = "cradle"
     CRADLE_RODS = "cradle-rods"
     CRADLE_BOOM = "cradle-boom"
@@ -43,7 +47,6 @@ class Picture(StrEnum):
     E_PLANE = "e-plane"
     H_PLANE = "h-plane"
     CURRENTS = "currents"
-    POSITION_CHART = "position-chart"
 
 
 @dataclass(frozen=True)

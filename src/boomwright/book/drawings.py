@@ -16,16 +16,12 @@ def chapter(run: Run) -> Chapter:
             f"reaches from {mm(seat.start_mm)} to {mm(seat.end_mm)}. Lengths without a tolerance of their own: fine "
             "general tolerance."
         ),
+        Paragraph("The same sheets lie in bench/: one DXF each at true size, all of them in one PDF at their scale."),
         Figure(Picture.BOOM_DRAWING, "Boom: every seat from one datum, with width and depth."),
+        Figure(Picture.ROD_TABLE, "Rods: tag, length, diameter, place."),
+        Figure(Picture.DRIVEN_DRAWING, "Driven element."),
+        Figure(Picture.CRADLE_DRAWING, "Cradle: every axis at one height above the table."),
+        Figure(Picture.MOULD_DRAWING, "Mould of the feed point."),
+        Figure(Picture.FORMER_DRAWING, "Former or jig of the driven element."),
     ]
-    if run.design.rods:
-        blocks.append(Figure(Picture.ROD_TABLE, "Rods: tag, length, diameter, place."))
-    if run.has("cradle"):
-        height = mm(run.axis_height_mm)
-        blocks.append(Figure(Picture.CRADLE, f"Cradle: every axis {height} above the table."))
-    if run.has_resin:
-        x, y, z = (mm(high - low) for low, high in run.plan.mould.block)
-        blocks.append(Figure(Picture.MOULD_CLOSED, f"Mould, closed: {x} along the boom, {y} along the rods, {z} high."))
-    if run.has("former"):
-        blocks.append(Figure(Picture.FORMER, "Former or jig of the driven element."))
     return Chapter("Drawings", "drawings", tuple(blocks))

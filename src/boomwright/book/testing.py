@@ -41,7 +41,6 @@ def chapter(run: Run) -> Chapter:
         _deviation_table(run, found),
         Heading("Which dimension does what"),
         _effect_table(run),
-        Figure(Picture.POSITION_CHART, "Every conductor's place, to hold a rule against."),
     ]
     return Chapter("Testing", "testing", tuple(blocks))
 
