@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 import signal
 import sys
 from collections.abc import Callable, Iterator, Sequence
@@ -159,6 +160,7 @@ def propose(
     quiet: Quiet = False,
 ) -> None:
     """Find a design for a band and write the design file."""
+    _use_one_thread()
     from boomwright.search.files import propose_file
     from boomwright.search.request import Request, band_of, form_of
 
@@ -191,6 +193,7 @@ def rescale(
     quiet: Quiet = False,
 ) -> None:
     """Carry a proven design to another band and stock, and report its figures before and after."""
+    _use_one_thread()
     from boomwright.search.carry import Target
     from boomwright.search.files import rescale_file
 
@@ -291,6 +294,12 @@ def _judge(result: object, quiet: bool, shortfalls: Sequence[object] = ()) -> No
         typer.echo(f"audit: {len(result.findings)} quantities measured, {len(result.failures)} not met")
     _tell_shortfalls(shortfalls)
     raise typer.Exit(DONE if result.ok and not shortfalls else NOT_MET)
+
+
+def _use_one_thread() -> None:
+    """Before numpy loads: the search's matrices are small, and its result must not follow the number of cores."""
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
+    os.environ.setdefault("OMP_NUM_THREADS", "1")
 
 
 def _progress(step: str) -> None:

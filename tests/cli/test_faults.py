@@ -87,7 +87,7 @@ def test_all_faults_come_at_once(tmp_path: Path) -> None:
 
 def test_a_bed_that_is_too_small_names_the_shop_file(tmp_path: Path) -> None:
     (tmp_path / "good.toml").write_text(GOOD)
-    (tmp_path / "small.toml").write_text("schema = 1\n[printer]\nbed_mm = [100.0, 100.0, 100.0]\n")
+    (tmp_path / "small.toml").write_text("schema = 1\n[printer]\nbed_mm = [40.0, 40.0, 100.0]\n")
     done = boomwright("make", "good.toml", "--shop", "small.toml", cwd=tmp_path)
     assert done.returncode == 2
     assert done.stderr.startswith("small.toml: printer.bed_mm: ")

@@ -11,7 +11,6 @@ import ezdxf
 import pytest
 import shapely
 
-from boomwright.audit import audit_folder
 from boomwright.coupon import make_coupon
 from boomwright.errors import PlanFault
 from boomwright.listing import listing
@@ -96,7 +95,7 @@ def test_no_name_is_both_a_part_and_a_calibration_piece():
 @pytest.fixture(scope="module")
 def made(tmp_path_factory):
     place = tmp_path_factory.mktemp("coupon")
-    (place / "shop.toml").write_text(write_shop(SHOP))
+    (place / "shop.toml").write_text(write_shop(replace(SHOP, stock=SHOP.stock[:1])))
     result = make_coupon(place / "shop.toml", place / "out")
     assert [str(finding) for finding in result.audit.failures] == []
     return place / "out"
@@ -113,9 +112,7 @@ def test_the_folder_says_what_it_holds_and_what_was_taken(made):
     assert offsets["laser/kerf-comb-1.dxf"] == {"kerf_mm": 0.0}
     assert offsets["laser/slot-ladder-1.dxf"] == {"kerf_mm": SHOP.laser.kerf_mm}
     assert (made / "bench/coupon-sheet.pdf").is_file()
-    again = audit_folder(made)
-    assert json.loads(again.as_json()) == json.loads((made / "audit.json").read_text())
-    measured = {(f.file, f.what) for f in again.findings}
+    measured = {(f["file"], f["what"]) for f in json.loads((made / "audit.json").read_text())["findings"]}
     assert ("print/hole-ladder-1.stl", "hole 3.25, step 0.25, width in x") in measured
     assert ("print/press-ladder-1.step", "pocket 10.15, step 0.075, width in y") in measured
     assert ("laser/slot-ladder-1.dxf", "slot of fit -0.05, width") in measured

@@ -98,3 +98,18 @@ def test_one_sound_solid_that_leaves_the_wire_its_place(name):
             r = former.wire_mm / 2.0
             leg = cylinder((former.gap_mm / 2.0, 0.0, BASE_MM + r), (1, 0, 0), r, former.leg_mm)
             assert sum(s.Volume() for s in solid.intersect(leg).Solids()) < 1e-6
+
+
+def test_a_round_loop_by_hand_and_its_post_where_it_winds_past_itself():
+    """Perimeter 350 less the gap of 4 is 346 of wire; wire 2 on a post of 350 / (2 pi) - 1 less 3 %."""
+    former, sizes = plan_former(samples.LOOP_868, Shop())
+    values = {size.key: size.value for size in sizes}
+    assert values["former.developed_mm"] == pytest.approx(346.0)
+    post_mm = (350.0 / (2.0 * math.pi) - 1.0) * 0.97
+    assert values["former.bend.1.post_mm"] == pytest.approx(post_mm)
+    turn_deg = math.degrees(346.0 / (post_mm + 1.0))
+    assert values["former.bend.1.turn_deg"] == pytest.approx(turn_deg)
+    assert turn_deg > 360.0
+    assert former.post_top_mm == pytest.approx(4.0 + 2 * 2.0 + 2.0)  # base, two layers of wire, and what holds them
+    assert any(label.text == "=346.0" for label in former.labels)
+    assert plan_former(samples.GAUGE, Shop())[0].post_top_mm == pytest.approx(4.0 + 2.0 + 2.0)

@@ -18,6 +18,8 @@ SLAB_MM = 0.3
 """Resin's last layer: how far under the ceiling the cavity's ends are looked for."""
 
 SEGMENTS = 32
+SLIVER_MM3 = 1e-2
+"""Spaces smaller than this are rounding: a box that ends a nanometre beyond the mould."""
 
 
 def measure_cavity_volume(reading: StepReading, arguments: Arguments, also: Sequence[Any]) -> float:
@@ -73,7 +75,7 @@ def measure_ceiling(reading: StepReading, arguments: Arguments, also: Sequence[A
     columns = [*arguments["openings"], *arguments.get("passages", ())]
     whole = spaces_of(reading, arguments, also)
     left = _without_columns(whole, columns, axis)
-    boxes = [np.reshape(space.bounding_box(), (2, 3)) for space in left if not space.is_empty()]
+    boxes = [np.reshape(space.bounding_box(), (2, 3)) for space in left]
     if not boxes:
         raise MeasureError(f"{reading.path.name}: no cavity is left beside the openings")
     ends = [(box[1] if up[axis] > 0.0 else -box[0])[axis] for box in boxes]
@@ -85,7 +87,7 @@ def measure_ceiling(reading: StepReading, arguments: Arguments, also: Sequence[A
         raise CatalogueError(f"no such quantity of a ceiling: {quantity!r}")
     level = up[axis] * max(ends)
     slabs = [_slab(space, axis, sorted((level, level - up[axis] * SLAB_MM))) for space in whole]
-    reach = [np.reshape(slab.bounding_box(), (2, 3))[:, 1] for slab in slabs if not slab.is_empty()]
+    reach = [np.reshape(slab.bounding_box(), (2, 3))[:, 1] for slab in slabs if slab.volume() > SLIVER_MM3]
     side = np.sign(at[1])
     return float(max(side * (high if side > 0.0 else low) for low, high in reach) - side * at[1])
 
@@ -99,7 +101,8 @@ def _without_columns(spaces: Sequence[Any], openings: Sequence[Any], axis: int) 
         column = manifold3d.Manifold.cylinder(1e3, float(radius), float(radius), SEGMENTS, True)
         turned = column if axis == 2 else column.rotate((0.0, 90.0, 0.0) if axis == 0 else (90.0, 0.0, 0.0))
         columns.append(turned.translate(tuple(float(value) for value in point)))
-    return [manifold3d.Manifold.batch_boolean([one, *columns], manifold3d.OpType.Subtract) for one in spaces]
+    left = [manifold3d.Manifold.batch_boolean([one, *columns], manifold3d.OpType.Subtract) for one in spaces]
+    return [piece for one in left for piece in one.decompose() if piece.volume() > SLIVER_MM3]
 
 
 def _slab(space: Any, axis: int, span: Sequence[float]) -> Any:

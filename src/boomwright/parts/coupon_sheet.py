@@ -17,7 +17,7 @@ PAGE_MM = (210.0, 297.0)
 MARGIN_MM = 14.0
 TITLE_MM, HEAD_MM, WORDS_MM = 4.2, 2.9, 2.25
 LINE_MM, AFTER_MM = 4.3, 2.4
-CHARACTERS = 124
+CHARACTERS = 116
 """Characters of the smaller words that fit a line."""
 
 BLANK_MM = 28.0

@@ -19,7 +19,7 @@ from boomwright.units import wavelength_mm
 LEAST_WL = 0.045
 """Least distance of two neighbours [wavelengths]: nearer ones work against one another, and a hair moves the gain."""
 
-LEAST_DIAMETERS = 2.5
+LEAST_DIAMETERS = 1.75
 """Least distance of two axes in diameters of the thicker: nearer, current crowds more than the equations carry."""
 
 SEARCH_STEPS = 12
@@ -74,7 +74,7 @@ def least_gaps(stock: Stock, wavelength: float, trial: Callable[[float, float], 
     back, back_why = least(lambda gap: trial(gap, spacing + far), behind)
     front, front_why = least(lambda gap: trial(far, spacing + gap), ahead)
     step = stock.step_mm
-    rounded = [math.ceil(value / step - 1e-6) * step for value in (back, spacing + front, between)]
+    rounded = [round(math.ceil(value / step - 1e-6) * step, 3) for value in (back, spacing + front, between)]
     why = "the grooves' web" if between > floor else "electrical"
     return Gaps(rounded[0], rounded[1], rounded[2], (back_why, front_why, why))
 
