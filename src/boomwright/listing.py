@@ -8,7 +8,7 @@ from textwrap import wrap
 
 from boomwright.data.tables import cables, materials
 from boomwright.design.schema import design_schema
-from boomwright.parts.catalogue import PARTS
+from boomwright.parts.catalogue import BOOK, BOOK_PURPOSE, PARTS
 from boomwright.parts.coupon import COUPONS
 from boomwright.shop.profile import Shop
 from boomwright.shop.tomlfile import write_shop
@@ -28,6 +28,8 @@ def _parts() -> str:
     for part in PARTS:
         lines += _told(f"{part.name} ({', '.join(part.processes)})", part.purpose)
         lines += _told("", f"left out when: {part.left_out_when}")
+    lines += _told(f"{BOOK} (book)", BOOK_PURPOSE)
+    lines += _told("", "left out when: --only names other parts and not it")
     lines += ["", "Calibration pieces, by boomwright coupon:"]
     for piece in COUPONS:
         lines += _told(f"{piece.name} ({', '.join(piece.processes)})", piece.purpose)

@@ -8,7 +8,6 @@ from pathlib import Path
 
 from boomwright.audit import DESIGN_FILE, SHOP_FILE, Audit, audit_folder
 from boomwright.audit import FILE as AUDIT_FILE
-from boomwright.book import NAME as BOOK
 from boomwright.crew import crew
 from boomwright.design.model import Design
 from boomwright.design.tomlfile import load_design, write_design
@@ -17,7 +16,7 @@ from boomwright.folder import OUTPUTS, check_replaceable, fresh_folder
 from boomwright.formats.format import FileEntry
 from boomwright.manifest import Manifest, write_manifest
 from boomwright.output import write_piece
-from boomwright.parts.catalogue import PARTS
+from boomwright.parts.catalogue import BOOK, PARTS
 from boomwright.pieces import IDENTITY, Part
 from boomwright.plan.plan import Plan, make_plan
 from boomwright.prediction import Prediction, predict

@@ -5,7 +5,6 @@ from __future__ import annotations
 from pathlib import Path
 
 from boomwright.audit import Audit
-from boomwright.book import NAME
 from boomwright.book.chapters import write_chapters
 from boomwright.book.content import Picture
 from boomwright.book.document import Illustration, as_document
@@ -18,11 +17,12 @@ from boomwright.book.view.section import view_html
 from boomwright.formats.format import FileEntry
 from boomwright.manifest import BOOK_PROCESS as PROCESS
 from boomwright.manifest import Manifest
+from boomwright.parts.catalogue import BOOK
 from boomwright.plan.frame import IDENTITY
 from boomwright.plan.plan import Plan
 from boomwright.prediction import Prediction
 
-PAGE, PAPER = f"{NAME}.html", f"{NAME}.pdf"
+PAGE, PAPER = f"{BOOK}.html", f"{BOOK}.pdf"
 DRAWN = {
     Picture.VSWR: "rf/vswr.svg",
     Picture.GAIN: "rf/gain.svg",
@@ -73,8 +73,8 @@ def write_book(folder: Path, plan: Plan, prediction: Prediction, manifest: Manif
     (folder / PAGE).write_text(page_html(document, illustrations, view), "utf-8", newline="\n")
     (folder / PAPER).write_bytes(paper_pdf(document, illustrations))
     return [
-        FileEntry(PAGE, NAME, PROCESS, "html", "mm", IDENTITY),
-        FileEntry(PAPER, NAME, PROCESS, "pdf", "mm", IDENTITY),
+        FileEntry(PAGE, BOOK, PROCESS, "html", "mm", IDENTITY),
+        FileEntry(PAPER, BOOK, PROCESS, "pdf", "mm", IDENTITY),
     ]
 
 

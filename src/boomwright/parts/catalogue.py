@@ -9,6 +9,9 @@ from boomwright.pieces import Part
 from boomwright.registry import Catalogue
 
 ENTRY_POINTS = "boomwright.parts"
+BOOK = "build-book"
+BOOK_PURPOSE = "what to buy, cut, print, glue, solder and measure, step by step, with the figures of this run"
+"""The book is no part: it is written from all of them, when they have been measured. It is asked for like one."""
 
 _OWN = (
     "boomwright.parts.antenna:AntennaPart",

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from typing import TYPE_CHECKING, Any
 
+from boomwright.parts.feet import expect_foot
 from boomwright.pieces import Expectation, Probe
 from boomwright.plan.compensation import NOMINAL, Offsets
 from boomwright.plan.cradle_budget import joints_before
@@ -34,6 +35,7 @@ def step_of(section: Section) -> str:
 
 def expect_section(plan: Plan, section: Section, drawn: Offsets) -> Iterator[Expectation]:
     """Notches, stops, rests and bores in STEP and STL; relief, outer sizes and no overlap with what is laid in it."""
+    yield expect_foot(section.stem)
     for suffix, offsets in (("step", NOMINAL), ("stl", drawn)):
         file = f"print/{section.stem}.{suffix}"
         yield from _notches(plan.cradle, section, file, offsets.outline_growth_mm)
