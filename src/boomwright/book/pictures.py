@@ -38,6 +38,19 @@ HIDDEN = np.float32(1.0)
 """Samples that an edge may lie behind what is drawn and still count as its edge."""
 
 
+ALTS = {
+    Picture.ANTENNA: "the finished antenna, each rod with its tag",
+    Picture.CRADLE: "the empty cradle, seen from above",
+    Picture.CRADLE_RODS: "the rods laid in the cradle, each with its tag",
+    Picture.CRADLE_BOOM: "the boom upside down on its saddles, over the rods in the cradle",
+    Picture.CRADLE_DRIVEN: "the driven element in its place, the rest of the antenna pale",
+    Picture.MOULD_OPEN: "the mould's two halves drawn apart, the feed point between them",
+    Picture.MOULD_CLOSED: "the mould closed round the feed point",
+    Picture.FORMER: "the former of the driven element",
+}
+"""What each picture shows, for who cannot see it."""
+
+
 @dataclass(frozen=True)
 class View:
     """Where the viewer stands: turned from the side of the boom toward its front, and raised, in degrees."""
