@@ -12,7 +12,7 @@ import pytest
 import trimesh
 from scene_cases import NASTY, box, boxes, written
 
-from boomwright.book.pictures import pictures
+from boomwright.book.pictures import ALTS, pictures
 from boomwright.book.poses import EXPLODED, LAID
 from boomwright.book.scene import read_scene
 from boomwright.book.view.section import scene_json, view_html
@@ -127,6 +127,7 @@ def test_every_picture_is_made_and_is_the_same_twice(gauge):
     made = pictures(scene, 240)
     names = "antenna cradle cradle-rods cradle-boom cradle-driven mould-open mould-closed former"
     assert {str(name) for name in made} == set(names.split())
+    assert set(ALTS) == set(made)
     assert pictures(read_scene(folder, plan, manifest), 240) == made
 
 

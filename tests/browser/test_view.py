@@ -27,6 +27,7 @@ def page(tmp_path_factory):
     html = view_html(scene, picture(scene, Shot(scene.keys("Antenna")), 300))
     path = tmp_path_factory.mktemp("page") / "view.html"
     head = '<!doctype html><html lang="en"><meta charset="utf-8"><meta name="color-scheme" content="light dark">'
+    head += "<style>body { font: 18px/1.6 'DejaVu Sans', sans-serif }</style>"
     names = "<script>var names{} = Object.getOwnPropertyNames(window);</script>"
     body = f"<p>Before.</p>{names.format('Before')}{html}{names.format('After')}<p>After.</p>"
     path.write_text(f"{head}<title>view</title><body>{body}</body></html>", "utf-8")

@@ -16,7 +16,7 @@ from boomwright.book.raster import FINE, Canvas, Colours, Points, Sheet, farthes
 from boomwright.book.scene import ANTENNA, CRADLE, MOULD, Scene, ScenePart
 from boomwright.data.lettering import strokes, text_width_mm
 
-SIZE_PX = 720
+SIZE_PX = 640
 PAPER = (255, 255, 255)
 INK = (24, 30, 36)
 LIGHT = (-0.35, 0.55, 0.76)
@@ -36,6 +36,19 @@ DIM, INK_SHARE = 0.55, 0.3
 
 HIDDEN = np.float32(1.0)
 """Samples that an edge may lie behind what is drawn and still count as its edge."""
+
+
+ALTS = {
+    Picture.ANTENNA: "the finished antenna, each rod with its tag",
+    Picture.CRADLE: "the empty cradle, seen from above",
+    Picture.CRADLE_RODS: "the rods laid in the cradle, each with its tag",
+    Picture.CRADLE_BOOM: "the boom upside down on its saddles, over the rods in the cradle",
+    Picture.CRADLE_DRIVEN: "the driven element in its place, the rest of the antenna pale",
+    Picture.MOULD_OPEN: "the mould's two halves drawn apart, the feed point between them",
+    Picture.MOULD_CLOSED: "the mould closed round the feed point",
+    Picture.FORMER: "the former of the driven element",
+}
+"""What each picture shows, for who cannot see it."""
 
 
 @dataclass(frozen=True)
@@ -100,8 +113,8 @@ def picture(scene: Scene, shot: Shot, size_px: int = SIZE_PX) -> bytes:
     behind = farthest_near_by(sheet.depth()) - HIDDEN
     for each in drawn:
         sheet.draw(each.lines, each.ink, FINE, behind)
-    for text, end in tags:
-        _write(sheet, text, frame.on_sheet(end))
+    if tags:
+        _write(sheet, [(text, frame.on_sheet(end)) for text, end in tags])
     return png(sheet.picture())
 
 
@@ -207,18 +220,21 @@ def _tags(scene: Scene, pose: Pose, shot: Shot, axes: Points) -> Iterator[tuple[
             yield axis.key, ends[np.argsort(ends[:, 1])]
 
 
-def _write(sheet: Sheet, text: str, end: Points) -> None:
-    """Text on a patch of paper, beyond the end of what it belongs to, away from its other end."""
+def _write(sheet: Sheet, tags: Sequence[tuple[str, Points]]) -> None:
+    """Tags on patches of paper."""
+    lines = np.array([line for text, end in tags for line in _lettered(text, end)])
+    sheet.draw(lines, PAPER, 4 * FINE, None)
+    sheet.draw(lines, INK, FINE + 1, None)
+
+
+def _lettered(text: str, end: Points) -> Iterator[tuple[tuple[float, float, float], ...]]:
+    """The lines of a tag beyond the end of what it belongs to, away from its other end."""
     height = FINE * TAG_PX
     away = end[0, :2] - end[1, :2]
     length = float(np.hypot(*away))
     away = away / length if length > 0.0 else np.array([0.0, 1.0])
     x, y = end[0, :2] + 1.7 * height * away
     x, y = x - text_width_mm(text, height) / 2.0, y + height / 2.0
-    lines = [
-        ((x + a[0], y - a[1], 0.0), (x + b[0], y - b[1], 0.0))
-        for stroke in strokes(text, height)
-        for a, b in pairwise(stroke)
-    ]
-    sheet.draw(np.array(lines), PAPER, 4 * FINE, None)
-    sheet.draw(np.array(lines), INK, FINE + 1, None)
+    for stroke in strokes(text, height):
+        for a, b in pairwise(stroke):
+            yield (x + a[0], y - a[1], 0.0), (x + b[0], y - b[1], 0.0)

@@ -20,6 +20,9 @@ BATCH = 2_000_000
 """Samples worked on at a time, so that memory stays small."""
 
 DEPTH_STEPS = float(2**31)
+LEVELS = 63
+"""Steps of a colour channel in a file, each of four of 255: nobody sees them, and files are smaller."""
+
 OWNER_BITS = 24
 OWNERS = np.int64((1 << OWNER_BITS) - 1)
 NOTHING = np.int64(-1)
@@ -91,6 +94,8 @@ class Sheet:
         self, lines: Points, ink: tuple[int, int, int], thickness: int, behind: NDArray[np.float32] | None
     ) -> None:
         """Straight lines, (k, 2, 3), samples thick; `behind` hides what is farther off than it says, None = nothing."""
+        low, high = lines[:, :, :2].min(axis=1), lines[:, :, :2].max(axis=1)
+        lines = lines[np.all((high >= 0.0) & (low < (self.canvas.width, self.canvas.height)), axis=1)]
         steps = np.maximum(np.ceil(np.abs(lines[:, 1, :2] - lines[:, 0, :2]).max(axis=1)).astype(np.int64), 1) + 1
         line = np.repeat(np.arange(len(lines)), steps)
         along = np.arange(len(line)) - np.repeat(np.cumsum(steps) - steps, steps)
@@ -98,14 +103,16 @@ class Sheet:
         points = lines[line, 0] * (1.0 - share) + lines[line, 1] * share
         column, row = np.floor(points[:, 0]).astype(np.int64), np.floor(points[:, 1]).astype(np.int64)
         inside = (column >= 0) & (column < self.canvas.width) & (row >= 0) & (row < self.canvas.height)
+        column, row, depth = column[inside], row[inside], points[inside, 2]
         if behind is not None:
-            inside[inside] = points[inside, 2] >= behind[row[inside], column[inside]]
+            seen = depth >= behind[row, column]
+            column, row = column[seen], row[seen]
         self._inks.append(ink)
-        low = -((thickness - 1) // 2)
-        for down in range(low, low + thickness):
-            for right in range(low, low + thickness):
-                rows = np.clip(row[inside] + down, 0, self.canvas.height - 1)
-                columns = np.clip(column[inside] + right, 0, self.canvas.width - 1)
+        width = range(-((thickness - 1) // 2), thickness // 2 + 1)
+        for down in width:
+            rows = np.clip(row + down, 0, self.canvas.height - 1)
+            for right in width:
+                columns = np.clip(column + right, 0, self.canvas.width - 1)
                 self._ink[rows, columns] = len(self._inks) - 1
 
     def picture(self) -> Colours:
@@ -181,15 +188,14 @@ def _chunk(kind: bytes, data: bytes) -> bytes:
 
 def _in_few_colours(pixels: Colours) -> tuple[NDArray[np.uint8], Colours]:
     """A colour number for every pixel, and the colours: the most frequent; the others become the nearest."""
-    fine = (pixels.astype(np.int32) + 2) >> 2
-    packed = (fine[:, 0] << 14) | (fine[:, 1] << 7) | fine[:, 2]
-    counts = np.bincount(packed, minlength=1 << 21)
+    fine = (pixels.astype(np.int32) * LEVELS + 127) // 255
+    packed = (fine[:, 0] << 12) | (fine[:, 1] << 6) | fine[:, 2]
+    counts = np.bincount(packed, minlength=1 << 18)
     found = np.flatnonzero(counts)
     order = np.argsort(-counts[found], kind="stable")
     kept = np.sort(found[order[:256]])
-    levels = np.stack([found >> 14, (found >> 7) & 127, found & 127], axis=1)
-    palette = np.stack([kept >> 14, (kept >> 7) & 127, kept & 127], axis=1)
+    levels, palette = (np.stack([of >> 12, (of >> 6) & LEVELS, of & LEVELS], axis=1) for of in (found, kept))
     distance = ((levels[:, None] - palette[None]) ** 2).sum(axis=2)
-    number = np.zeros(1 << 21, dtype=np.uint8)
+    number = np.zeros(1 << 18, dtype=np.uint8)
     number[found] = distance.argmin(axis=1)
-    return number[packed], np.minimum(palette * 4, 255).astype(np.uint8)
+    return number[packed], ((palette * 255 + LEVELS // 2) // LEVELS).astype(np.uint8)

@@ -39,7 +39,7 @@ def view_html(scene: Scene, still_png: bytes) -> str:
     scene      what it shows
     still_png  the picture that stands there on paper, without scripts and without WebGL
 
-    Every class name begins with `bw-view`; a page may set the colours listed at the top of view.css.
+    Every class name begins with `bw-view`; colours are the page's where it has those named at the top of view.css.
     """
     title = escape(scene.title)
     still = base64.b64encode(still_png).decode("ascii")
