@@ -18,6 +18,9 @@ from boomwright.search.family import Figures
 MATCH_PENALTY_DB = 30.0
 """What one unit of |reflection|^2 beyond its bound costs in gain."""
 
+STRICT_PENALTY_DB = 150.0
+"""The same where arrays are compared: a bound is not traded for a hundredth of a decibel."""
+
 RATIO_PENALTY = 3.0
 """What one decibel of front-to-back short of its bound costs in gain."""
 
@@ -73,7 +76,7 @@ class Aim:
     def merit_db(self, found: Figures) -> float:
         """Worst gain, less the penalties for what is not kept [dB]."""
         merit = float(found.gain_dbi.min())
-        merit -= MATCH_PENALTY_DB * max(0.0, float(_mismatch(found, self.system_ohm)[0].max()) - self.reflection_most)
+        merit -= STRICT_PENALTY_DB * max(0.0, float(_mismatch(found, self.system_ohm)[0].max()) - self.reflection_most)
         if self.front_to_back_least_db is not None:
             merit -= RATIO_PENALTY * max(0.0, self.front_to_back_least_db - float(found.front_to_back_db.min()))
         return merit

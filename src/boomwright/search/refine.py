@@ -7,6 +7,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from boomwright.design.model import Design
+from boomwright.prediction import sweep_frequencies_mhz
 from boomwright.rf.arrays import Complexes, Floats
 from boomwright.rf.quadrature import interpolation
 from boomwright.rf.solve import Model
@@ -14,7 +15,7 @@ from boomwright.rf.wires import wires_of
 from boomwright.search.draft import Frame, bounds_of, draft_design, rounded_mm
 from boomwright.search.family import Family, Figures
 from boomwright.search.optimise import Aim, Array, Bounds, optimise
-from boomwright.units import m_from_mm
+from boomwright.units import hz_from_mhz, m_from_mm
 
 CORRECTIONS = 2
 STEPS = 60
@@ -67,6 +68,8 @@ def refine(
         if _settled(before, corrected):
             break
     array = _on_steps(frame, corrected, array, bounds, aim)
+    corrected = correct(frame, family, array)
+    array = _on_steps(frame, corrected, array, bounds, aim)
     return design_of(frame, array), array, corrected
 
 
@@ -86,7 +89,7 @@ def correct(frame: Frame, family: Family, array: Array) -> Corrected:
     design = draft_design(frame.request, frame.stock, array.lengths_m * 1e3, array.places_m * 1e3)
     frequencies_hz = np.array(family.frequencies_hz)
     picked = sorted({0, len(frequencies_hz) // 2, len(frequencies_hz) - 1})
-    model = Model(wires_of(design), float(frequencies_hz[-1]))
+    model = Model(wires_of(design), hz_from_mhz(sweep_frequencies_mhz(design)[-1]))
     solved = [model.solve(float(frequencies_hz[index])) for index in picked]
     found = family.figures(array.lengths_m, array.places_m)
     shares = interpolation(frequencies_hz[picked], frequencies_hz)
