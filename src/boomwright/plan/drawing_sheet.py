@@ -24,7 +24,7 @@ from boomwright.plan.drawing_marks import (
 )
 from boomwright.plan.drawing_view import View
 
-A4_MM, A3_MM = (297.0, 210.0), (420.0, 297.0)
+A4_MM, A3_MM, A2_MM = (297.0, 210.0), (420.0, 297.0), (594.0, 420.0)
 BINDING_MM, MARGIN_MM = 20.0, 10.0
 INSET_MM, GAP_MM = 5.0, 7.0
 TITLE_BLOCK_MM = (180.0, 34.0)
@@ -95,8 +95,11 @@ def detail_scale(size_mm: float, target_mm: float) -> float:
     return next((scale for scale in SCALES if scale * size_mm <= target_mm), SCALES[-1])
 
 
-def lay_sheet(title: Title, size_mm: tuple[float, float], build: Build) -> Sheet:
-    """A sheet at the largest scale at which the blocks that `build` makes find room; the first is the main one."""
+def lay_sheet(title: Title, size_mm: tuple[float, float], build: Build) -> Sheet | None:
+    """A sheet at the largest scale at which the blocks that `build` makes find room; the first is the main one.
+
+    None where they find room at no scale.
+    """
     sheet = Sheet(title, size_mm, SCALES[-1], Block())
     for scale in SCALES:
         blocks = build(scale)
@@ -106,7 +109,7 @@ def lay_sheet(title: Title, size_mm: tuple[float, float], build: Build) -> Sheet
             words = tuple(w for b in placed for w in b.words)
             dimensions = tuple(d for b in placed for d in b.dimensions)
             return replace(sheet, scale=scale, content=Block(strokes, words, dimensions, placed[0].origin))
-    return sheet
+    return None
 
 
 def table_block(head: Sequence[str], rows: Sequence[Sequence[str]], most_rows: int = 40) -> Block:
