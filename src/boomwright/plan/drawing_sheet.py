@@ -95,13 +95,13 @@ def detail_scale(size_mm: float, target_mm: float) -> float:
     return next((scale for scale in SCALES if scale * size_mm <= target_mm), SCALES[-1])
 
 
-def lay_sheet(title: Title, size_mm: tuple[float, float], build: Build) -> Sheet | None:
-    """A sheet at the largest scale at which the blocks that `build` makes find room; the first is the main one.
+def lay_sheet(title: Title, size_mm: tuple[float, float], build: Build, scales: Sequence[float]) -> Sheet | None:
+    """A sheet at the first of the scales at which the blocks that `build` makes find room; the first is the main one.
 
-    None where they find room at no scale.
+    None where they find room at none of them.
     """
-    sheet = Sheet(title, size_mm, SCALES[-1], Block())
-    for scale in SCALES:
+    sheet = Sheet(title, size_mm, 1.0, Block())
+    for scale in scales:
         blocks = build(scale)
         placed = _place(blocks, sheet)
         if placed is not None:
