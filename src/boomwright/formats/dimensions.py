@@ -78,11 +78,12 @@ def measure_count(reading: Any, arguments: Mapping[str, Any]) -> float:
 
 def measure_cell(reading: Any, arguments: Mapping[str, Any]) -> float:
     """The number in the table whose first head is `key`: in the row that begins with `row`, under the head `column`."""
-    words: Sequence[SeenWords] = reading.placed_words
     key, row, column = (str(arguments[name]) for name in ("key", "row", "column"))
-    for head in (w for w in words if w.text == key):
-        heads = [w for w in words if w.text == column and _level(w, head) and w.x > head.x]
-        rows = [w for w in words if w.text == row and abs(w.x - head.x) < SAME_PLACE * head.height and w.y < head.y]
+    words: Sequence[SeenWords] = reading.placed_words
+    named = [w for w in words if w.text in (key, row, column)]
+    for head in (w for w in named if w.text == key):
+        heads = [w for w in named if w.text == column and _level(w, head) and w.x > head.x]
+        rows = [w for w in named if w.text == row and abs(w.x - head.x) < SAME_PLACE * head.height and w.y < head.y]
         if not heads or not rows:
             continue
         under, start = min(heads, key=lambda w: w.x), max(rows, key=lambda w: w.y)

@@ -120,6 +120,8 @@ def _former(plan: Plan) -> Sizes:
     sizes = {"plate length": length, "plate width": width, "post 1": 2.0 * former.posts[0].post_mm}
     if not former.is_corner:
         sizes["gap feeler"] = former.gap_mm
+        if former.bends[0].mark_mm > 1.0:
+            sizes["stop to post 1"] = former.bends[0].mark_mm
     first, last = former.posts[0], former.posts[-1]
     apart = abs(first.middle(former.wire_mm)[0] - last.middle(former.wire_mm)[0])
     return sizes | ({"posts apart": apart} if apart > 1.0 else {})

@@ -66,7 +66,7 @@ def in_short(tags: Sequence[str]) -> str:
     """Tags in a row, runs of directors as `D2-D5`."""
     numbered = [(int(tag[1:]) if tag[0] == "D" and tag[1:].isdigit() else None, tag) for tag in tags]
     words = []
-    for _, group in groupby(enumerate(numbered), key=lambda one: one[1][0] is not None and one[1][0] - one[0]):
+    for _, group in groupby(enumerate(numbered), key=lambda one: None if one[1][0] is None else one[1][0] - one[0]):
         run = [tag for _, (_, tag) in group]
         words += [f"{run[0]}-{run[-1]}"] if len(run) > 2 and run[0][1:].isdigit() else run
     return ", ".join(words)

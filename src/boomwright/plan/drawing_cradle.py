@@ -22,13 +22,14 @@ def cradle_blocks(plan: Plan, scale: float) -> Sequence[Block]:
         "DATUM: x = 0 of the boom. The antenna lies upside down; FORWARD is to the right. Long dashes: outer sizes.",
         "Notches: 90 degrees; every rod's axis lies at the axis height whatever its diameter.",
     ]
-    return [_views(plan.cradle, scale), table_block(NOTCH_HEAD, notch_rows(plan.cradle), 32), notes_block(notes)]
+    return [_views(plan.cradle, scale), table_block(NOTCH_HEAD, notch_rows(plan), 32), notes_block(notes)]
 
 
-def notch_rows(cradle: CradlePlan) -> list[tuple[str, str, str, str, str]]:
-    """A row for every conductor that is held."""
+def notch_rows(plan: Plan) -> list[tuple[str, str, str, str, str]]:
+    """A row for every conductor that is held; the front one of a folded element lies between the same stops."""
+    cradle, slide = plan.cradle, plan.shop.printer.slide_clearance_mm
     apexes = {n.tag: n.apex_mm for b in cradle.bearers for n in b.notches}
-    pockets = {s.tag: shown(2.0 * s.y_mm[0]) for s in cradle.stops}
+    pockets = {h.tag: shown(2.0 * (h.tip_mm + slide)) for h in cradle.held if h.tag != "DE-front"}
     return [
         (h.tag, shown(h.at_mm), shown(2.0 * h.radius_mm), shown(apexes[h.tag]), pockets.get(h.tag, "-"))
         for h in cradle.held

@@ -15,6 +15,8 @@ if TYPE_CHECKING:
     from boomwright.plan.plan import Plan
 
 SIZE_HEAD = ("size", "mm")
+LEAST_LEG_MM = 1.0
+"""A shorter run from the stop to the first post is none: the loop begins at the stop."""
 
 
 def former_blocks(plan: Plan, scale: float) -> Sequence[Block]:
@@ -55,6 +57,8 @@ def _plate(former: FormerPlan, scale: float) -> Block:
         half = former.gap_mm / 2.0
         view.run([(-half, -former.channel_mm / 2.0), (-half, r), (half, r), (half, -former.channel_mm / 2.0)])
         view.straight("gap feeler", "x", ((-half, y0), (half, y0)), low - 8.0)
+        if former.leg_mm > LEAST_LEG_MM:
+            view.straight("stop to post 1", "x", ((half, y0), (former.posts[0].start[0], y0)), low - 16.0)
     middles = [bend.middle(former.wire_mm) for bend in former.posts]
     if len(middles) > 1:
         a, b = middles[0], middles[-1]
@@ -62,9 +66,9 @@ def _plate(former: FormerPlan, scale: float) -> Block:
         if abs(a[0] - b[0]) > 1.0:
             view.straight("posts apart", "x", ((a[0], y1), (b[0], y1)), up + 8.0)
     view.diameter("post 1", middles[0], former.posts[0].post_mm, 60.0, 8.0)
-    view.straight("plate length", "x", ((x0, y0), (x1, y0)), low - 16.0)
+    view.straight("plate length", "x", ((x0, y0), (x1, y0)), low - 24.0)
     view.straight("plate width", "y", ((x0, y0), (x0, y1)), left - 8.0)
-    view.write("PLAN (seen from above)", (left, low - 23.0))
+    view.write("PLAN (seen from above)", (left, low - 31.0))
     return view.block()
 
 

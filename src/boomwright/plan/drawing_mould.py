@@ -50,7 +50,7 @@ def _views(plan: Plan, scale: float) -> Block:
     side.run([(x0 - 3.0 / scale, axis), (x1 + 3.0 / scale, axis)], "CENTRE")
     for x, z in _crossings(mould):
         side.circle((x, z), mould.conductor_channel_mm)
-    left, low, up = side.at((x0, 0.0))[0], side.at((0.0, z0))[1], side.at((0.0, z1))[1]
+    left, low, up = side.at((x0, 0.0))[0], side.at((0.0, z0))[1], side.at((0.0, max(z1, axis + half)))[1]
     side.straight("cavity along", "x", ((cx0, z1), (cx1, z1)), up + 8.0)
     side.straight("block along", "x", ((x0, z1), (x1, z1)), up + 16.0)
     side.straight("cavity height", "y", ((x0, cz0), (x0, cz1)), left - 8.0)

@@ -24,7 +24,7 @@ from boomwright.plan.drawing_marks import (
 )
 from boomwright.plan.drawing_view import View
 
-A4_MM, A3_MM = (297.0, 210.0), (420.0, 297.0)
+A4_MM, A3_MM, A2_MM = (297.0, 210.0), (420.0, 297.0), (594.0, 420.0)
 BINDING_MM, MARGIN_MM = 20.0, 10.0
 INSET_MM, GAP_MM = 5.0, 7.0
 TITLE_BLOCK_MM = (180.0, 34.0)
@@ -95,10 +95,13 @@ def detail_scale(size_mm: float, target_mm: float) -> float:
     return next((scale for scale in SCALES if scale * size_mm <= target_mm), SCALES[-1])
 
 
-def lay_sheet(title: Title, size_mm: tuple[float, float], build: Build) -> Sheet:
-    """A sheet at the largest scale at which the blocks that `build` makes find room; the first is the main one."""
-    sheet = Sheet(title, size_mm, SCALES[-1], Block())
-    for scale in SCALES:
+def lay_sheet(title: Title, size_mm: tuple[float, float], build: Build, scales: Sequence[float]) -> Sheet | None:
+    """A sheet at the first of the scales at which the blocks that `build` makes find room; the first is the main one.
+
+    None where they find room at none of them.
+    """
+    sheet = Sheet(title, size_mm, 1.0, Block())
+    for scale in scales:
         blocks = build(scale)
         placed = _place(blocks, sheet)
         if placed is not None:
@@ -106,7 +109,7 @@ def lay_sheet(title: Title, size_mm: tuple[float, float], build: Build) -> Sheet
             words = tuple(w for b in placed for w in b.words)
             dimensions = tuple(d for b in placed for d in b.dimensions)
             return replace(sheet, scale=scale, content=Block(strokes, words, dimensions, placed[0].origin))
-    return sheet
+    return None
 
 
 def table_block(head: Sequence[str], rows: Sequence[Sequence[str]], most_rows: int = 40) -> Block:

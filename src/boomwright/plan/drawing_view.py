@@ -36,6 +36,7 @@ PITCH_MM = TEXT_MM + 1.4
 """Between the middles of upright texts side by side."""
 
 HATCH_MM = 2.0
+SAME_MM = 1e-6
 JOG_MM = 6.0
 ORIGIN_MM = 1.0
 
@@ -65,9 +66,10 @@ class View:
         self.dimensions += other.dimensions
 
     def run(self, points: Sequence[Sequence[float]], layer: Layer = "VISIBLE", closed: bool = False) -> None:
-        """A run of points (x, y) or (x, y, bulge)."""
-        vertices = tuple((*self.at((p[0], p[1])), p[2] if len(p) > 2 else 0.0) for p in points)
-        self.strokes.append(Stroke(vertices, layer, closed))
+        """A run of points (x, y) or (x, y, bulge); points that lie on the one before them are left out."""
+        vertices = [(*self.at((p[0], p[1])), p[2] if len(p) > 2 else 0.0) for p in points]
+        kept = [v for i, v in enumerate(vertices) if i == 0 or math.dist(v[:2], vertices[i - 1][:2]) > SAME_MM]
+        self.strokes.append(Stroke(tuple(kept), layer, closed))
 
     def rectangle(self, x: Point, y: Point, layer: Layer = "VISIBLE") -> None:
         """A rectangle between two x and two y."""
