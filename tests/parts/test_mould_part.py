@@ -44,7 +44,9 @@ def written(plan: Plan, folder: Path) -> None:
     (folder / "print").mkdir()
     for part, place in ((AntennaPart(), folder), (Mould(), folder / "print")):
         for piece in part.build(plan):
-            STEP.write(piece, place / f"{piece.stem}.step")
+            for form in (STEP, STL):
+                if form.takes(piece):
+                    form.write(piece, place / f"{piece.stem}{form.suffix}")
 
 
 @cache
@@ -167,5 +169,6 @@ def test_a_filled_corner_is_found(tmp_path: Path) -> None:
 def test_expectations_rest_on_the_plan_alone() -> None:
     plan = planned("square loop")
     found: tuple[Expectation, ...] = Mould().expect(plan)
-    assert {e.file for e in found} == {f"print/mould-{stem}.step" for stem in ("upper", "lower", "clip")}
+    files = {f"print/mould-{stem}.{suffix}" for stem in ("upper", "lower", "clip") for suffix in ("step", "stl")}
+    assert {e.file for e in found} == files
     assert len({(e.file, e.what) for e in found}) == len(found)
