@@ -229,7 +229,8 @@ def _inside(plan: Plan, view: View, outer: list[Point]) -> None:
             for z in (-r, r):
                 view.run([(low, z), (high, z)])
             holes.append([(low, -r), (high, -r), (high, r), (low, r)])
-    view.hatch(outer, holes)
+    floor = max(z for _, z in outer)
+    view.hatch(outer, [[(y, min(z, floor)) for y, z in hole] for hole in holes])
 
 
 def _profile(plan: Plan) -> Block:

@@ -88,12 +88,15 @@ def _parting(mould: MouldPlan, view: View, across: Point, upward: Point) -> None
 
 
 def _crossings(mould: MouldPlan) -> list[Point]:
-    """Where conductors leave the block at its +y side, in x and z."""
-    found, (x, _, z) = [], mould.block
-    for runs in mould.conductors:
-        for end in (runs[0].start, runs[-1].end):
-            if end[1] > mould.cavity.along.span_mm[1] and x[0] < end[0] < x[1] and z[0] < end[2] < z[1]:
-                found.append((round(end[0], 6), round(end[2], 6)))
+    """Where conductors pass through the block's wall at +y, in x and z."""
+    found, (x, _, z), wall = [], mould.block, mould.cavity.along.span_mm[1]
+    for run in (run for runs in mould.conductors for run in runs):
+        low, high = sorted((run.start, run.end), key=lambda point: point[1])
+        share = (wall - low[1]) / (high[1] - low[1]) if low[1] <= wall < high[1] else None
+        if share is not None:
+            at = (low[0] + share * (high[0] - low[0]), low[2] + share * (high[2] - low[2]))
+            if x[0] < at[0] < x[1] and z[0] < at[1] < z[1]:
+                found.append((round(at[0], 6), round(at[1], 6)))
     return list(dict.fromkeys(found))
 
 
