@@ -6,15 +6,14 @@ from boomwright.book.content import (
     Block,
     Caution,
     Chapter,
-    Figure,
     Heading,
     Paragraph,
-    Picture,
     Step,
     Steps,
     Table,
     Topic,
 )
+from boomwright.book.drawings import drawing_words
 from boomwright.book.run import Run
 from boomwright.book.words import counted, figure, listed, mm
 
@@ -24,7 +23,7 @@ def chapter(run: Run) -> Chapter:
     grooved = bool(run.plan.seat.grooves)
     title = "Grooving the boom" if grooved else "Drilling the boom"
     blocks: list[Block] = [
-        Figure(Picture.BOOM_DRAWING, "The boom with every seat, dimensioned from one datum."),
+        *drawing_words(run, "boom"),
         Steps(tuple(_steps(run, grooved))),
     ]
     if run.plan.seat.grooves or run.plan.seat.holes:

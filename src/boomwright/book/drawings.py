@@ -7,6 +7,13 @@ from boomwright.book.run import Run
 from boomwright.book.words import mm
 
 
+def drawing_words(run: Run, what: str) -> tuple[Paragraph, ...]:
+    """Where to find the drawing of something (`boom`, `rods`); nothing where none was made."""
+    if not run.has("drawings"):
+        return ()
+    return (Paragraph(f"Its sheet is in the chapter of drawings, and at full size in bench/drawing-{what}.dxf."),)
+
+
 def chapter(run: Run) -> Chapter:
     """Boom, rods, cradle, mould and former."""
     seat = run.plan.seat

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from boomwright.book.content import Block, Caution, Chapter, Figure, Paragraph, Picture, Step, Steps, Table, Topic
+from boomwright.book.content import Block, Caution, Chapter, Paragraph, Step, Steps, Table, Topic
+from boomwright.book.drawings import drawing_words
 from boomwright.book.run import Run
 from boomwright.book.shopping import tolerance_words
 from boomwright.book.words import figure, listed, mm
@@ -20,7 +21,7 @@ def chapter(run: Run) -> Chapter:
             "Length decides more than anything else here. Cut a little long, dress to length, check, and keep each "
             "rod under its tag from then on."
         ),
-        Figure(Picture.ROD_TABLE, "All rods with their lengths and places, from one datum."),
+        *drawing_words(run, "rods"),
         Steps(tuple(_steps(run))),
         _check_table(run),
     ]
