@@ -90,5 +90,8 @@ LONG_145 = Design(
 )
 """Rods of a metre on two metres of boom: a printed cradle in many sections, with outriggers."""
 
+LONE_LOOP = replace(LOOP_2450, name="lone-loop", rods=())
+"""The least that `make` makes: no rod to hold, to cut or to measure."""
+
 FITTING = (GAUGE, CAMERA, CAMERA_FOLDED, SQUARE_915, MIXED_1296, TUBE_915, UPRIGHT_868, LOOP_868, LOOP_2450)
 """Designs whose every part fits the built-in shop."""

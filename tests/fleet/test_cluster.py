@@ -3,7 +3,7 @@
 from pathlib import Path
 
 import pytest
-from samples import CAMERA
+from samples import LONE_LOOP
 from typer.testing import CliRunner
 
 from boomwright.cli import app
@@ -19,8 +19,8 @@ VARIANT = '[[variant]]\nname = "{}"\ndesign = "beam.toml"\nset = {{ "boom.nose_m
 def test_two_workers_make_what_one_process_makes(tmp_path: Path) -> None:
     from distributed import LocalCluster
 
-    (tmp_path / "beam.toml").write_text(write_design(CAMERA), "utf-8")
-    names = [("a", "8.0"), ("broken", '"long"'), ("thin", "0.0")]
+    (tmp_path / "beam.toml").write_text(write_design(LONE_LOOP), "utf-8")
+    names = [("a", "12.0"), ("broken", '"long"'), ("thin", "0.0")]
     (tmp_path / "beams.toml").write_text("schema = 1\n" + "".join(VARIANT.format(*each) for each in names), "utf-8")
     alone = run_fleet(tmp_path / "beams.toml", out=tmp_path / "alone")
     with LocalCluster(

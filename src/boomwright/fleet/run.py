@@ -33,7 +33,7 @@ from boomwright.fleet.recipe import Recipe, recipe_of
 from boomwright.fleet.table import Variant, load_table
 from boomwright.folder import OUTPUTS
 
-PRELOAD = ("cadquery", "boomwright.pipeline", "boomwright.search.propose")
+PRELOAD = ("cadquery", "boomwright.pipeline")
 KEPT = ".fleet"
 JOURNAL = "journal.json"
 Progress = Callable[[int, int, str], None]

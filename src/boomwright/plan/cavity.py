@@ -25,6 +25,7 @@ Array = NDArray[np.float64]
 ROWS, COLUMNS = 1200, 400
 """Strips along the pull and points across it of the integral over the boom: good to 1e-4 of the boom's volume."""
 
+RINGS, THREADS, STEPS_PER_THREAD = 4, 12, 1000
 STEPS_PER_RUN = 20_000
 """Points along one run of a conductor: a step of 0.05 mm on a run of a metre."""
 
@@ -143,11 +144,36 @@ def _kept_width_mm(boom: BoomBar, x: Array, z: Array) -> Array:
 
 
 def wire_mm3(cavity: Cavity, runs: Sequence[Run], radius_mm: float) -> float:
-    """Volume of a round conductor in the cavity [mm³]: its section times the length of its centreline inside."""
+    """Volume of a round conductor in the cavity [mm³]: threads of its section, each as long as it runs inside.
+
+    A thread each, because a wall may run along a bend and leave part of the section outside.
+    """
     inside_mm = 0.0
-    for run in runs:
-        inside_mm += run.length_mm * float(cavity.holds(points_along(run, STEPS_PER_RUN)).mean())
-    return math.pi * radius_mm**2 * inside_mm
+    for run in (part for visit in within(runs, cavity.box_mm, radius_mm) for part in visit):
+        points = points_along(run, STEPS_PER_THREAD)
+        across, upright = _normals(run, points)
+        for share in (np.arange(RINGS) + 0.5) / RINGS:
+            for angle in np.arange(THREADS) * (2.0 * math.pi / THREADS):
+                off = radius_mm * math.sqrt(share) * (math.cos(angle) * across + math.sin(angle) * upright)
+                thread = points + off
+                steps_mm = np.linalg.norm(np.gradient(thread, axis=0), axis=1)
+                inside_mm += float((steps_mm * cavity.holds(thread)).sum())
+    return math.pi * radius_mm**2 * inside_mm / (RINGS * THREADS)
+
+
+def _normals(run: Run, points_mm: Array) -> tuple[Array, Array]:
+    """Two unit vectors across a run, square to each other, at each of its points (n, 3)."""
+    along = np.array(run.end) - np.array(run.start)
+    if run.middle is None:
+        least = np.eye(3)[int(np.argmin(np.abs(along)))]
+        across = np.cross(along, least)
+        across = across / np.linalg.norm(across)
+        upright = np.cross(along / np.linalg.norm(along), across)
+        return np.broadcast_to(across, points_mm.shape), np.broadcast_to(upright, points_mm.shape)
+    radial = points_mm - _centre(run)
+    radial = radial / np.linalg.norm(radial, axis=1)[:, None]
+    normal = np.cross(np.array(run.start) - _centre(run), np.array(run.middle) - _centre(run))
+    return radial, np.broadcast_to(normal / np.linalg.norm(normal), points_mm.shape)
 
 
 def points_along(run: Run, count: int) -> Array:
