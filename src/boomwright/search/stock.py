@@ -19,12 +19,15 @@ NARROW, WIDE = 0.015, 0.04
 """Relative bandwidths between which rods are chosen thicker."""
 
 ROD_SIZES_MM = (1.0, 1.5, 2.0, 3.0, 4.0, 5.0, 6.0, 8.0)
-WIRE_SIZES_MM = (0.8, 1.0, 1.5, 2.0, 3.0, 4.0, 5.0, 6.0)
+WIRE_SIZES_MM = (0.6, 0.8, 1.0, 1.5, 2.0, 3.0, 4.0, 5.0, 6.0)
 BOOM_SIZES_MM = (5.0, 6.0, 8.0, 10.0, 12.0, 15.0, 18.0, 20.0, 25.0, 30.0, 35.0, 40.0, 50.0, 60.0, 80.0, 100.0)
 """Sizes on sale [mm] (common practice)."""
 
-BRASS_UP_TO_MM = 3.0
-"""Brass rod is on sale everywhere up to this diameter, aluminium above it (common practice)."""
+ROD_MATERIAL = "aluminium"
+"""On sale as rod in all these sizes, light, and at several gigahertz it loses less than brass (common practice)."""
+
+SOLDERED_UP_TO_MM = 3.0
+"""A straight driven rod up to this diameter is of copper, so that the feed can be soldered to it."""
 
 BOOM_SLENDERNESS = 80.0
 BOOM_MOST_FOR_LENGTH_MM = 40.0
@@ -32,7 +35,7 @@ BOOM_PER_DEPTH = 2.4
 FINE_ABOVE_MHZ = 3000.0
 GAP_WL, LEAST_GAP_MM, MOST_GAP_MM = 0.012, 1.5, 12.0
 MOST_SPACING_MM = 80.0
-LEAST_BEND_DIAMETERS = 5.0
+LEAST_BEND_DIAMETERS = 4.1
 """Spacing of a folded element in diameters: bends of its wire stay above four radii, where the equations hold."""
 
 SEATING_MM = 1.5
@@ -124,12 +127,11 @@ def _rod(wished_mm: float | None, free_mm: float, shelf: tuple[Bar, ...]) -> tup
     """Diameter and material of rods: the shelf's nearest, or a common size."""
     if wished_mm is not None:
         held = [bar for bar in shelf if abs(bar.diameter_mm - wished_mm) < 1e-9]
-        return wished_mm, held[0].material if held else _common_material(wished_mm)
+        return wished_mm, held[0].material if held else ROD_MATERIAL
     if shelf:
         bar = min(shelf, key=lambda bar: (_apart(bar.diameter_mm, free_mm), bar.material))
         return bar.diameter_mm, bar.material
-    size = nearest_size_mm(ROD_SIZES_MM, free_mm)
-    return size, _common_material(size)
+    return nearest_size_mm(ROD_SIZES_MM, free_mm), ROD_MATERIAL
 
 
 def _driven(form: Form, wave_mm: float, spacing_wl: float, near: tuple[float, tuple[Bar, ...]]) -> Driven:
@@ -139,23 +141,18 @@ def _driven(form: Form, wave_mm: float, spacing_wl: float, near: tuple[float, tu
         bar = min(shelf, key=lambda bar: (_apart(bar.diameter_mm, wish), bar.material != "copper", bar.material))
         wire, material = bar.diameter_mm, bar.material
     elif form == "straight":
-        wire, material = rod_mm, "copper" if rod_mm <= BRASS_UP_TO_MM else "aluminium"
+        wire, material = rod_mm, "copper" if rod_mm <= SOLDERED_UP_TO_MM else ROD_MATERIAL
     else:
         wire, material = nearest_size_mm(WIRE_SIZES_MM, wish), "copper"
     gap = round(2.0 * min(max(GAP_WL * wave_mm, LEAST_GAP_MM, 1.5 * wire), MOST_GAP_MM)) / 2.0
     driven = Driven(form, 0.0, wire, material, gap)
     if form == "folded":
-        spacing = (
-            math.ceil(2.0 * max(min(spacing_wl * wave_mm, MOST_SPACING_MM), LEAST_BEND_DIAMETERS * wire) - 1e-9) / 2.0
-        )
-        return replace(driven, spacing_mm=spacing, plane="flat")
+        wished = max(min(spacing_wl * wave_mm, MOST_SPACING_MM), LEAST_BEND_DIAMETERS * wire)
+        parts = 10.0 if wave_mm < wavelength_mm(FINE_ABOVE_MHZ) else 2.0
+        return replace(driven, spacing_mm=math.ceil(parts * wished - 1e-9) / parts, plane="flat")
     if form == "loop":
         return replace(driven, shape="square")
     return driven
-
-
-def _common_material(diameter_mm: float) -> str:
-    return "brass" if diameter_mm <= BRASS_UP_TO_MM else "aluminium"
 
 
 def _apart(size_mm: float, wish_mm: float) -> float:
