@@ -112,7 +112,7 @@ def _as_cut(request: Request, best: Candidate) -> tuple[Design, Array, Predictio
         found.append((over, design, array, prediction))
         if -UNUSED <= over <= 0.0 or over > 0.5 or (over < 0.0 and len(found) > 1):
             break
-        margin += over + MARGIN
+        margin += over + 2.0 * len(found) * MARGIN
     _, design, array, prediction = min(found, key=lambda each: (max(each[0], 0.0), -_least_gain_dbi(each[3])))
     return design, array, prediction
 

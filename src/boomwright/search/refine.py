@@ -17,7 +17,7 @@ from boomwright.search.family import Family, Figures
 from boomwright.search.optimise import Aim, Array, Bounds, optimise
 from boomwright.units import hz_from_mhz, m_from_mm
 
-CORRECTIONS = 6
+CORRECTIONS = 3
 STEPS = 60
 SETTLED_OHM, SETTLED_DB = 0.2, 0.004
 ROUNDING_PASSES = 3

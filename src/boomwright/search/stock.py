@@ -11,9 +11,14 @@ from boomwright.plan.seat import WEB_PER_RADIUS
 from boomwright.shop.profile import Bar, Shop
 from boomwright.units import wavelength_mm
 
-ROD_WL, WIDE_ROD_WL, WIRE_WL = 0.0085, 0.02, 0.009
-"""Wished diameters [wavelengths]: that of the published arrays, one for wide bands, which thicker rods hold better,
-and a wire that bends into a folded element."""
+ROD_WL, WIDE_ROD_WL = 0.0085, 0.0165
+"""Wished diameters [wavelengths]: that of the published arrays, and one for wide bands, which thicker rods hold."""
+
+WIRE_WL = 0.009
+"""The same for a wire that bends into a folded element."""
+
+STIFF_ROD_MM, STIFF_ROD_WL = 1.3, 0.03
+"""A thinner rod bends in the hand: it is wished at least so thick, where the wavelength allows it."""
 
 NARROW, WIDE = 0.015, 0.04
 """Relative bandwidths between which rods are chosen thicker."""
@@ -96,12 +101,14 @@ def choose_stock(wish: Wish, form: Form, spacing_wl: float, shop: Shop) -> Stock
     """
     wave = wavelength_mm(wish.centre_mhz)
     share = min(max((wish.relative_width - NARROW) / (WIDE - NARROW), 0.0), 1.0)
-    director, material = _rod(wish.rod_mm, (ROD_WL + share * (WIDE_ROD_WL - ROD_WL)) * wave, shop.stock)
+    free_mm = max((ROD_WL + share * (WIDE_ROD_WL - ROD_WL)) * wave, min(STIFF_ROD_MM, STIFF_ROD_WL * wave))
+    director, material = _rod(wish.rod_mm, free_mm, shop.stock)
     reflector, reflector_material = director, material
     if wish.reflector_mm is not None:
         reflector, reflector_material = _rod(wish.reflector_mm, wish.reflector_mm, shop.stock)
     glue = 0.05 if wish.centre_mhz > FINE_ABOVE_MHZ else 0.1
-    driven = _driven(form, wave, spacing_wl, (director, shop.stock))
+    wire_mm = director if form == "straight" else WIRE_WL * wave
+    driven = _driven(form, wave, spacing_wl, (wire_mm, shop.stock))
     thickest = max(director, reflector, driven.diameter_mm if form != "loop" else 0.0)
     depth = thickest + glue
     width = wish.boom_width_mm
@@ -135,13 +142,12 @@ def _rod(wished_mm: float | None, free_mm: float, shelf: tuple[Bar, ...]) -> tup
 
 
 def _driven(form: Form, wave_mm: float, spacing_wl: float, near: tuple[float, tuple[Bar, ...]]) -> Driven:
-    rod_mm, shelf = near
-    wish = WIRE_WL * wave_mm if form != "straight" else rod_mm
+    wish, shelf = near
     if shelf:
         bar = min(shelf, key=lambda bar: (_apart(bar.diameter_mm, wish), bar.material != "copper", bar.material))
         wire, material = bar.diameter_mm, bar.material
     elif form == "straight":
-        wire, material = rod_mm, "copper" if rod_mm <= SOLDERED_UP_TO_MM else ROD_MATERIAL
+        wire, material = wish, "copper" if wish <= SOLDERED_UP_TO_MM else ROD_MATERIAL
     else:
         wire, material = nearest_size_mm(WIRE_SIZES_MM, wish), "copper"
     gap = round(2.0 * min(max(GAP_WL * wave_mm, LEAST_GAP_MM, 1.5 * wire), MOST_GAP_MM)) / 2.0
