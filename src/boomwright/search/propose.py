@@ -21,11 +21,13 @@ from boomwright.shop.profile import Shop
 from boomwright.spec import Shortfall
 from boomwright.units import m_from_mm
 
-MARGIN = 0.015
+MARGIN = 0.004
 """Share of (VSWR - 1) that is kept back while searching: between the frequencies solved it is a little higher."""
 
-RATIO_MARGIN_DB = 0.2
+RATIO_MARGIN_DB = 0.1
 RETRIES = 2
+UNUSED = 0.03
+"""Share of (VSWR - 1) that may be left unused before another turn is worth its time."""
 
 
 @dataclass(frozen=True)
@@ -100,7 +102,7 @@ def _aim(request: Request, margin: float) -> Aim:
 
 
 def _as_cut(request: Request, best: Candidate) -> tuple[Design, Array, Prediction]:
-    """The design in whole steps and its prediction; again with more margin where a wish fails between frequencies."""
+    """The design in whole steps and its prediction; again with another margin where a wish fails or much is unused."""
     margin, array, corrected = MARGIN, best.array, None
     found: list[tuple[float, Design, Array, Prediction]] = []
     for _ in range(1 + RETRIES):
@@ -108,11 +110,15 @@ def _as_cut(request: Request, best: Candidate) -> tuple[Design, Array, Predictio
         prediction = predict(design, _checked_mhz(design))
         over = _over(request, prediction)
         found.append((over, design, array, prediction))
-        if over <= 0.0 or over > 0.5:
+        if -UNUSED <= over <= 0.0 or over > 0.5 or (over < 0.0 and len(found) > 1):
             break
-        margin += over + MARGIN / 4.0
-    _, design, array, prediction = min(found, key=lambda each: max(each[0], 0.0))
+        margin += over + 2.0 * len(found) * MARGIN
+    _, design, array, prediction = min(found, key=lambda each: (max(each[0], 0.0), -_least_gain_dbi(each[3])))
     return design, array, prediction
+
+
+def _least_gain_dbi(prediction: Prediction) -> float:
+    return float(prediction.sweep.gain_dbi[list(prediction.in_band)].min())
 
 
 def _checked_mhz(design: Design) -> tuple[float, ...]:
@@ -134,7 +140,7 @@ def _over(request: Request, prediction: Prediction) -> float:
 def _spec(request: Request, prediction: Prediction) -> Spec:
     """The wishes; where there is none, what was reached, rounded down."""
     inside = list(prediction.in_band)
-    gain = float(prediction.sweep.gain_dbi[inside].min())
+    gain = _least_gain_dbi(prediction)
     ratio = float(prediction.sweep.front_to_back_db[inside].min())
     gain_min = math.floor(10.0 * gain - 0.2) / 10.0 if request.gain_min_dbi is None else request.gain_min_dbi
     ratio_min = request.front_to_back_min_db

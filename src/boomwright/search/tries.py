@@ -44,7 +44,9 @@ SPACINGS_WL = (0.042, 0.055)
 COMFORTABLE_DB = 0.12
 """Gain over the published array's at which the search ends early."""
 
-WORTH_A_ROD_DB = 0.04
+WORTH_A_ROD_DB, LEAST_WORTH_DB = 0.04, 0.01
+"""Gain that a rod more must bring: above the target, and below it, where every bit counts."""
+
 Progress = Callable[[str], None]
 Variant = tuple[Form, float]
 
@@ -130,11 +132,12 @@ def _best(found: list[Candidate]) -> Candidate:
 
 
 def _fewest(found: list[Candidate], target_dbi: float) -> Candidate:
-    """The best; or one with fewer rods that loses little by it and still reaches the target."""
+    """The best; or one with fewer rods that loses little by it."""
     best = _best(found)
     for each in sorted(found, key=lambda each: (each.rods, -each.array.merit_db)):
         lost = best.array.merit_db - each.array.merit_db
-        if lost <= WORTH_A_ROD_DB * (best.rods - each.rods) and each.array.merit_db >= target_dbi:
+        worth = WORTH_A_ROD_DB if each.array.merit_db >= target_dbi else LEAST_WORTH_DB
+        if lost <= worth * (best.rods - each.rods):
             return each
     return best
 
