@@ -1,6 +1,6 @@
 """A fleet of twelve: two jobs against one, and a second run that has nothing to do. Prints ratios of one run.
 
-    python tests/bench/bench_fleet.py
+python tests/bench/bench_fleet.py
 """
 
 import subprocess
