@@ -261,10 +261,19 @@ def test_a_tapered_box_has_its_volume_by_hand() -> None:
     assert cavity.volume_mm3() == pytest.approx(2.0 * frustum, rel=2e-3)
 
 
-def test_a_wire_right_through_has_its_section_times_the_width() -> None:
-    cavity = Cavity("z", Taper((-10.0, 10.0), 0.0), Taper((-5.0, 5.0), 0.0), (-4.0, 4.0), 0.1)
+@pytest.mark.parametrize("slope", [0.0, 0.1])
+def test_a_wire_right_through_has_its_section_times_the_width(slope: float) -> None:
+    cavity = Cavity("z", Taper((-10.0, 10.0), 0.0), Taper((-5.0, 5.0), 0.0), (-4.0, 4.0), slope)
     run = straight((0.0, -20.0, 0.0), (0.0, 20.0, 0.0))
-    assert wire_mm3(cavity, (run,), 1.5) == pytest.approx(math.pi * 1.5**2 * 10.0, rel=1e-3)
+    # A half disc's centroid lies 4 r / (3 pi) from its diameter: so much lower stands the leaning wall, on average.
+    width = 10.0 - 2.0 * slope * 4.0 * 1.5 / (3.0 * math.pi)
+    assert wire_mm3(cavity, (run,), 1.5) == pytest.approx(math.pi * 1.5**2 * width, rel=1e-3)
+
+
+def test_a_wire_along_the_wall_has_half_its_section_inside() -> None:
+    cavity = Cavity("z", Taper((-10.0, 10.0), 0.0), Taper((-5.0, 5.0), 0.0), (-4.0, 4.0), 0.0)
+    run = straight((-6.0, 5.0, 0.0), (6.0, 5.0, 0.0))
+    assert wire_mm3(cavity, (run,), 1.5) == pytest.approx(math.pi * 1.5**2 * 12.0 / 2.0, rel=1e-3)
 
 
 @pytest.mark.parametrize("draft_deg", [0.0, 1.0, 5.0])

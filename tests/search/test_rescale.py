@@ -43,7 +43,8 @@ def test_to_its_own_band_and_stock_nothing_moves():
 def test_bends_stay_makeable():
     tight = replace(gauge(), driven=replace(gauge().driven, bend_radius_mm=2.0))
     driven = carried(tight, Target(5800.0), Shop())[0].driven
-    assert driven.spacing_mm >= 5.0 * driven.diameter_mm
+    # The axis bends at 4 conductor radii or more: tighter, the solver doubts its own impedance.
+    assert driven.spacing_mm / 2.0 >= 4.0 * driven.diameter_mm / 2.0
     assert driven.bend_radius_mm is None or driven.bend_radius_mm >= 1.5 * driven.diameter_mm - 1e-9
 
 

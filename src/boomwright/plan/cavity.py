@@ -153,7 +153,7 @@ def wire_mm3(cavity: Cavity, runs: Sequence[Run], radius_mm: float) -> float:
         points = points_along(run, STEPS_PER_THREAD)
         across, upright = _normals(run, points)
         for share in (np.arange(RINGS) + 0.5) / RINGS:
-            for angle in np.arange(THREADS) * (2.0 * math.pi / THREADS):
+            for angle in (np.arange(THREADS) + 0.5) * (2.0 * math.pi / THREADS):
                 off = radius_mm * math.sqrt(share) * (math.cos(angle) * across + math.sin(angle) * upright)
                 thread = points + off
                 steps_mm = np.linalg.norm(np.gradient(thread, axis=0), axis=1)

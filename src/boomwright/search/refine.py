@@ -17,7 +17,7 @@ from boomwright.search.family import Family, Figures
 from boomwright.search.optimise import Aim, Array, Bounds, optimise
 from boomwright.units import hz_from_mhz, m_from_mm
 
-CORRECTIONS, FEW_CORRECTIONS, MANY_CONDUCTORS = 6, 3, 10
+CORRECTIONS, FEW_CORRECTIONS, COSTLY_CONDUCTORS = 6, 3, 10
 STEPS = 60
 SETTLED_OHM, SETTLED_DB = 0.2, 0.004
 ROUNDING_PASSES = 3
@@ -62,7 +62,7 @@ def refine(
     """
     bounds = bounds_of(frame, family, len(array.lengths_m), frame.request.boom_mm)
     corrected = corrected or correct(frame, family, array)
-    for _ in range(CORRECTIONS if len(array.lengths_m) < MANY_CONDUCTORS else FEW_CORRECTIONS):
+    for _ in range(CORRECTIONS if len(array.lengths_m) < COSTLY_CONDUCTORS else FEW_CORRECTIONS):
         array = optimise(corrected, (array.lengths_m, array.places_m), bounds, aim, STEPS)
         before, corrected = corrected, correct(frame, family, array)
         if _settled(before, corrected):
