@@ -103,7 +103,8 @@ def lay_lines(design: Design, boom: Boom, shop: Shop, seat: SeatPlan) -> tuple[L
         max(h.at_mm + h.radius_mm * ROOT_2 for h in held),
     )
     places = saddle_places(design, shop, seat, window is not None)
-    saddles, rail_x = stand_saddles((boom, shop, seat), height, places, (rails[0], notches))
+    beside = [((s.at_mm - width / 2.0, s.at_mm + width / 2.0), s.inner_mm) for s in stops]
+    saddles, rail_x = stand_saddles((boom, shop, seat), height, places, (rails[0], notches), beside)
     lines = Lines(
         sheet_mm=t,
         axis_height_mm=height,

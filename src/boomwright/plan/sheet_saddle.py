@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 
@@ -25,6 +26,8 @@ RAIL_BEYOND_MM = 6.0
 """Rail beyond its outermost notch, less where a saddle stands there."""
 
 LEAST_BEYOND_MM = 3.0
+APART_MM = 0.5
+"""Between a saddle and a rail or stop beside it."""
 
 
 @dataclass(frozen=True)
@@ -79,25 +82,32 @@ def _near(room: Span, t: float, at_end: bool) -> Span:
 
 
 def stand_saddles(
-    given: tuple[Boom, Shop, SeatPlan], height_mm: float, places: list[Span], rails: tuple[float, Span]
+    given: tuple[Boom, Shop, SeatPlan],
+    height_mm: float,
+    places: list[Span],
+    rails: tuple[float, Span],
+    stops: Sequence[tuple[Span, float]],
 ) -> tuple[tuple[SaddleLine, ...], Span]:
     """The saddles, and x of the rails' ends: a wide saddle stands beyond them, one between the rails is narrow.
 
     rails   |y| of their inner faces, and x of the outermost notches' edges
+    stops   x and least |y| of each: a saddle beside them stands between them
     """
     inner, notches = rails
     rail_x = _reaching((notches[0] - RAIL_BEYOND_MM, notches[1] + RAIL_BEYOND_MM), places)
     found = []
     for x in places:
-        wide = _saddle(given, height_mm, x, math.inf)
-        if wide.half_mm > inner - 0.5:
+        beside = [y for span, y in stops if span[0] - APART_MM < x[1] and x[0] < span[1] + APART_MM]
+        most = min(beside, default=math.inf) - APART_MM
+        wide = _saddle(given, height_mm, x, most)
+        if wide.half_mm > inner - APART_MM:
             within = rail_x[0] <= x[0] and x[1] <= rail_x[1]
             if not within and x[1] <= notches[0] - LEAST_BEYOND_MM:
-                rail_x = (max(rail_x[0], x[1] + 0.5), rail_x[1])
+                rail_x = (max(rail_x[0], x[1] + APART_MM), rail_x[1])
             elif not within and x[0] >= notches[1] + LEAST_BEYOND_MM:
-                rail_x = (rail_x[0], min(rail_x[1], x[0] - 0.5))
+                rail_x = (rail_x[0], min(rail_x[1], x[0] - APART_MM))
             else:
-                wide = _saddle(given, height_mm, x, inner - 0.5)
+                wide = _saddle(given, height_mm, x, min(most, inner - APART_MM))
         found.append(wide)
     return tuple(found), rail_x
 
@@ -122,7 +132,7 @@ def _saddle(given: tuple[Boom, Shop, SeatPlan], height_mm: float, x_mm: Span, mo
         channel = half / ROOT_2 + max(1.0, half / 6.0)
         channel = min(channel, most_half_mm - LEAST_CHEEK_MM)
         if channel < half / ROOT_2 + 0.3:
-            raise LeftOutError("the rails stand too close to the boom for a saddle between them")
+            raise LeftOutError("rails or stops stand too close to the boom for a saddle between them")
         top = low + channel
     else:
         low, channel = height_mm - seat.top_mm, half + shop.printer.slide_clearance_mm
