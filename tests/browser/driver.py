@@ -157,6 +157,13 @@ class Browser:
         """A command of the browser's own protocol."""
         return self._call("POST", "/goog/cdp/execute", {"cmd": name, "params": values})
 
+    def go_offline(self) -> None:
+        """Cut the page off from every network, as where the antenna is built."""
+        self.command("Network.enable")
+        self.command(
+            "Network.emulateNetworkConditions", offline=True, latency=0, downloadThroughput=0, uploadThroughput=0
+        )
+
     def complaints(self) -> list[str]:
         """What the console has reported since the last call, warnings and errors."""
         entries = self._call("POST", "/se/log", {"type": "browser"})

@@ -54,10 +54,7 @@ def folder(tmp_path_factory):
 @pytest.fixture(scope="module")
 def browser():
     with Browser() as one:
-        one.command("Network.enable")
-        one.command(
-            "Network.emulateNetworkConditions", offline=True, latency=0, downloadThroughput=0, uploadThroughput=0
-        )
+        one.go_offline()
         yield one
 
 

@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 
 from boomwright.errors import Fault, PlanFault
+from boomwright.plan.size import Size
 
 LEAST_ANGLE_DEG, MOST_ANGLE_DEG = 20.0, 160.0
 
@@ -37,3 +39,23 @@ def _rise_mm(diameter_mm: float, included_angle_deg: float) -> float:
         found = f"{included_angle_deg:g} is outside {LEAST_ANGLE_DEG:g} to {MOST_ANGLE_DEG:g}"
         raise PlanFault([Fault("included_angle_deg", found, "90 is common practice")])
     return diameter_mm / 2.0 / math.sin(math.radians(included_angle_deg) / 2.0)
+
+
+def axis_height(needs_mm: Mapping[str, float], radii_mm: Mapping[str, float], key: str) -> tuple[float, list[Size]]:
+    """The height at which every axis lies: what the most demanding need asks for, rounded up to half a millimetre.
+
+    needs_mm  heights, by what asks for each in words
+    radii_mm  of what rests in notches, by tag
+    key       first part of the sizes' keys
+
+    Returns the height [mm], and its size with those of the notches' apexes.
+    """
+    reason = max(needs_mm, key=lambda words: needs_mm[words])
+    height = math.ceil(needs_mm[reason] * 2.0 - 1e-9) / 2.0
+    sizes = [Size(f"{key}.axis_height_mm", height, "mm", f"{reason}, rounded up to half a millimetre")]
+    for tag, radius in radii_mm.items():
+        apex = notch_apex_height_mm(height, 2.0 * radius)
+        sizes.append(
+            Size(f"{key}.notch.{tag}.apex_mm", apex, "mm", f"axis height {height:g} - radius {radius:g} x root 2")
+        )
+    return height, sizes

@@ -20,7 +20,7 @@ from boomwright.plan.cradle_model import (
     Stop,
     between_neighbours,
 )
-from boomwright.plan.notch import notch_apex_height_mm
+from boomwright.plan.notch import axis_height, notch_apex_height_mm
 from boomwright.plan.saddle import FLOOR_MM, SADDLE_WALL_MM, TIE_GROOVE_DEPTH_MM
 from boomwright.plan.seat import SeatPlan
 from boomwright.plan.size import Size
@@ -61,14 +61,7 @@ def plan_axis_height(boom: Boom, shop: Shop, seat: SeatPlan, held: tuple[Held, .
         f"base and tie groove {over_tie:g} under the saddles": saddle,
         f"base and tie groove {over_tie:g} under the deepest notch": over_tie + ROOT_2 * max(h.radius_mm for h in held),
     }
-    reason = max(needs, key=lambda words: needs[words])
-    height = math.ceil(needs[reason] * 2.0 - 1e-9) / 2.0
-    sizes = [Size("cradle.axis_height_mm", height, "mm", f"{reason}, rounded up to half a millimetre")]
-    for h in held:
-        apex = notch_apex_height_mm(height, 2.0 * h.radius_mm)
-        origin = f"axis height {height:g} - radius {h.radius_mm:g} x root 2"
-        sizes.append(Size(f"cradle.notch.{h.tag}.apex_mm", apex, "mm", origin))
-    return height, sizes
+    return axis_height(needs, {h.tag: h.radius_mm for h in held}, "cradle")
 
 
 def plan_rails(ground: Ground, limit: Limit = UNLIMITED) -> tuple[Span | None, list[Size], list[Fault]]:

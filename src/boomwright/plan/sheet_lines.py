@@ -11,7 +11,7 @@ from itertools import pairwise
 
 from boomwright.design.model import Boom, Design
 from boomwright.plan.cradle import Held, held_conductors
-from boomwright.plan.notch import notch_apex_height_mm
+from boomwright.plan.notch import axis_height, notch_apex_height_mm
 from boomwright.plan.seat import SeatPlan
 from boomwright.plan.sheet_plate import LeftOutError, Span, Vee
 from boomwright.plan.sheet_saddle import SaddleLine, saddle_places, stand_saddles
@@ -137,14 +137,7 @@ def _axis_height(
         ),
         f"base {t:g} + 6 under the saddle's bottom": t + 6.0 + seat.top_mm + rounding,
     }
-    reason = max(needs, key=lambda words: needs[words])
-    height = math.ceil(needs[reason] * 2.0 - 1e-9) / 2.0
-    sizes = [Size("sheet-cradle.axis_height_mm", height, "mm", f"{reason}, rounded up to half a millimetre")]
-    for h in held:
-        apex = notch_apex_height_mm(height, 2.0 * h.radius_mm)
-        origin = f"axis height {height:g} - radius {h.radius_mm:g} x root 2"
-        sizes.append(Size(f"sheet-cradle.notch.{h.tag}.apex_mm", apex, "mm", origin))
-    return height, sizes
+    return axis_height(needs, {h.tag: h.radius_mm for h in held}, "sheet-cradle")
 
 
 def _rails(shop: Shop, seat: SeatPlan, held: tuple[Held, ...]) -> tuple[Span, list[Size]]:
